@@ -1,0 +1,5 @@
+"""python -m traverse."""
+
+from traverse.cli import main
+
+main()

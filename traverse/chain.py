@@ -1,0 +1,258 @@
+"""The equation chain: from pressures, temperatures and composition to a flow, on one page.
+
+Every function takes numpy arrays whose *last axis is the traverse point* (length n, or 1 for what holds for the whole
+run). Leading axes are free: runs, a batch of traverses, draws, or the perturbed inputs of an uncertainty budget.
+Nothing here knows a record, a unit other than SI (a method's own arithmetic excepted), or a policy for bad readings:
+those have been applied before. Impossible input gives NaN.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from typing import Literal
+
+import numpy as np
+import numpy.typing as npt
+
+from traverse.methods import Constants
+from traverse.physics import gas, moist_air, pitot, sections
+from traverse.units import convert
+
+Array = npt.NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Setting:
+    """What selects the equations. None of it is uncertain, so none of it is an array.
+
+    ``reference`` is ('conditions', temperature [K], pressure [Pa]), ('density', density [kg/m3], 0) or None.
+    """
+
+    shape: str
+    gas_kind: Literal["air", "flue-gas", "given"]
+    humidity: str
+    density_given: Literal["", "at plane", "at conditions"] = ""
+    ratio_of_specific_heats: float | None = None
+    arithmetic: Literal["pointwise", "root-mean"] = "pointwise"
+    compressible: bool = True
+    signed: bool = False
+    constants: Constants | None = None
+    reference: tuple[str, float, float] | None = None
+    dimensions: tuple[str, ...] = field(default=("diameter",))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Flow:
+    """What the chain gives. ``points`` keep the point axis; ``quantities`` have lost it."""
+
+    points: dict[str, Array]
+    quantities: dict[str, Array]
+
+
+def evaluate(inputs: Mapping[str, Array], setting: Setting) -> Flow:
+    """Run the whole chain.
+
+    Parameters
+    ----------
+    inputs : mapping of str to array, shape (..., n) or (..., 1)
+        ``differential_pressure`` [Pa], ``root_shift`` [Pa^0.5], ``temperature`` [K], ``static`` [Pa gauge],
+        ``barometric`` [Pa], ``yaw`` [rad], ``weight``, ``coefficient``, ``water`` (in the form ``setting.humidity``),
+        ``moisture_shift``, the dry fractions, ``density`` [kg/m3], ``density_temperature`` [K], ``density_pressure``
+        [Pa], ``molar_mass`` [g/mol], ``point_factor``, ``wall_factor``, ``profile_factor``, and the dimensions of the
+        section by name [m].
+    setting : Setting
+        Which equations.
+
+    Returns
+    -------
+    Flow
+        Quantities in SI; NaN where the inputs are impossible or a quantity does not exist.
+    """
+    weight = inputs["weight"]
+    pressure = inputs["barometric"] + inputs["static"]
+    mean = {name: _mean(weight, inputs[name]) for name in ("temperature", "static")}
+    mean["pressure"] = _mean(weight, pressure)
+    matter = composition(inputs, setting, mean["temperature"], mean["pressure"])
+    root = roots(inputs["differential_pressure"], signed=setting.signed) + inputs["root_shift"]
+    step = _root_mean if setting.arithmetic == "root-mean" else _pointwise
+    flow = step(inputs, setting, matter, root, pressure, mean)
+    size = {name: inputs[name] for name in setting.dimensions}
+    return _totals(flow, inputs, setting, matter, root, mean, size)
+
+
+def roots(differential_pressure: Array, *, signed: bool) -> Array:
+    """Return the roots of the differential pressures; a negative one counts as zero, or keeps its sign. [Pa^0.5]"""
+    if signed:
+        return np.sign(differential_pressure) * np.sqrt(np.abs(differential_pressure))
+    return np.sqrt(np.maximum(differential_pressure, 0.0))
+
+
+def composition(inputs: Mapping[str, Array], setting: Setting, temperature: Array, pressure: Array) -> dict[str, Array]:
+    """Return moisture and molar masses of the run, at its mean temperature and absolute pressure.
+
+    ``molar_mass`` is NaN for a gas given by its density at the plane; ``molar_mass_dry`` where moisture is unknown.
+    """
+    if setting.humidity == "none":
+        moisture = np.full(np.shape(temperature), np.nan)
+    else:
+        moisture = moist_air.mole_fraction(setting.humidity, inputs["water"], temperature, pressure)
+        moisture = moisture + inputs["moisture_shift"]
+    own = setting.constants
+    water = own.molar_mass_water if own else gas.MOLAR_MASS["H2O"]
+    parts = tuple(inputs[name] for name in ("oxygen", "carbon_dioxide", "carbon_monoxide", "sulfur_dioxide"))
+    if setting.gas_kind == "given":
+        wet = inputs["molar_mass"]
+        if setting.density_given == "at conditions":
+            wet = inputs["density"] * gas.R * inputs["density_temperature"] / inputs["density_pressure"] * 1e3
+        elif setting.density_given == "at plane":
+            wet = inputs["density"] * gas.R * temperature / pressure * 1e3
+        return {"moisture": moisture, "molar_mass": wet, "molar_mass_dry": (wet - water * moisture) / (1.0 - moisture)}
+    if setting.gas_kind == "air":
+        dry = np.full(np.shape(temperature), own.molar_mass_air if own else gas.MOLAR_MASS["air"])
+    else:
+        dry = gas.epa_dry_molar_mass(*parts) if own else gas.dry_molar_mass(*parts)
+    wet = gas.wet_molar_mass(dry, moisture, water)
+    return {"moisture": moisture, "molar_mass": wet, "molar_mass_dry": dry}
+
+
+def _species(inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array]) -> dict[str, Array]:
+    moisture = np.where(np.isfinite(matter["moisture"]), matter["moisture"], 0.0)
+    if setting.gas_kind == "flue-gas":
+        return gas.wet_composition(
+            inputs["oxygen"], inputs["carbon_dioxide"], inputs["carbon_monoxide"], inputs["sulfur_dioxide"], moisture
+        )
+    return gas.air_composition(moisture)
+
+
+def _pointwise(
+    inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array], root: Array, pressure: Array,
+    mean: Mapping[str, Array],
+) -> dict[str, Array]:
+    """Velocity at each point with the density there; docs/method.md gives the equations."""
+    if setting.density_given == "at plane":
+        density = inputs["density"] + 0.0 * inputs["temperature"]
+    else:
+        density = gas.density(pressure, matter["molar_mass"], inputs["temperature"])
+    impact = np.square(root)
+    if setting.compressible:
+        speed = pitot.velocity(
+            impact, density, inputs["coefficient"], static_pressure=pressure,
+            ratio_of_specific_heats=ratio_of_specific_heats(inputs, setting, matter, mean["temperature"]),
+        )
+    else:
+        speed = pitot.velocity(impact, density, inputs["coefficient"])
+    velocity = np.copysign(speed, root) * np.cos(inputs["yaw"]) * inputs["point_factor"]
+    weighted = inputs["weight"] * velocity
+    flow = {"velocity": velocity, "density": density, "mean_velocity": _sum(weighted), "flux": _sum(weighted * density)}
+    if setting.reference is not None:
+        kind, first, second = setting.reference
+        ratio = density / first if kind == "density" else pressure / second * (first / inputs["temperature"])
+        flow["standard"] = _sum(weighted * ratio)
+    return flow
+
+
+def _root_mean(
+    inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array], root: Array, pressure: Array,
+    mean: Mapping[str, Array],
+) -> dict[str, Array]:
+    """Mean root with mean temperature, in the units and constants of the method (Method 2, eqs. 2-7 and 2-8)."""
+    own = setting.constants
+    assert own is not None, "root-mean arithmetic needs a method's constants"
+    temperature = _own_temperature(mean["temperature"], own)
+    absolute = _own(inputs["barometric"], own.pressure) + _own(mean["static"], own.head) / own.water_over_mercury
+    factor = own.velocity_constant * inputs["coefficient"] * np.sqrt(temperature / (absolute * matter["molar_mass"]))
+    head = root * np.sqrt(convert(1.0, own.head))
+    speed = factor * head / convert(1.0, own.velocity)
+    velocity = speed * np.cos(inputs["yaw"]) * inputs["point_factor"]
+    density = gas.density(mean["pressure"], matter["molar_mass"], mean["temperature"])
+    mean_velocity = _sum(inputs["weight"] * velocity)
+    flow = {"velocity": velocity, "density": density + 0.0 * velocity, "mean_velocity": mean_velocity}
+    flow["flux"] = mean_velocity * density[..., 0]
+    if setting.reference is not None:
+        kind, first, second = setting.reference
+        if kind == "density":
+            flow["standard"] = flow["flux"] / first
+        else:
+            standard = _own_temperature(np.float64(first), own)
+            flow["standard"] = mean_velocity * (
+                (standard / temperature) * (absolute / _own(np.float64(second), own.pressure))
+            )[..., 0]
+    return flow
+
+
+def _totals(
+    flow: Mapping[str, Array], inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array], root: Array,
+    mean: Mapping[str, Array], size: Mapping[str, Array],
+) -> Flow:
+    """Multiply by the area and gather the quantities."""
+    area = sections.area(setting.shape, size)[..., 0]
+    factor = (inputs["profile_factor"] * inputs["wall_factor"])[..., 0]
+    mean_velocity = flow["mean_velocity"] * factor
+    actual, mass = area * mean_velocity, area * flow["flux"] * factor
+    moisture = matter["moisture"][..., 0]
+    still = _sum(inputs["weight"] * flow["density"])
+    density = np.where(actual == 0.0, still, mass / np.where(actual == 0.0, 1.0, actual))
+    temperature = mean["temperature"]
+    species = _species(inputs, setting, matter)
+    viscosity = gas.viscosity(species, temperature) if setting.gas_kind == "flue-gas" else gas.air_viscosity(temperature)
+    quantities = {
+        "area": area,
+        "barometric_pressure": inputs["barometric"][..., 0],
+        "static_pressure": mean["static"][..., 0],
+        "absolute_pressure": mean["pressure"][..., 0],
+        "temperature": temperature[..., 0],
+        "moisture": moisture,
+        "molar_mass_dry": matter["molar_mass_dry"][..., 0],
+        "molar_mass": matter["molar_mass"][..., 0],
+        "density": density,
+        "mean_root_differential_pressure": _sum(inputs["weight"] * root),
+        "mean_velocity": mean_velocity,
+        "actual_flow": actual,
+        "mass_flow": mass,
+        "reynolds_number": np.abs(density * mean_velocity) * sections.hydraulic_diameter(setting.shape, size)[..., 0]
+        / viscosity[..., 0],
+        "wall_factor": inputs["wall_factor"][..., 0],
+    }
+    if "standard" in flow:
+        standard = area * flow["standard"] * factor
+        quantities["standard_flow"] = standard
+        dry = 1.0 - moisture
+        if setting.reference is not None and setting.reference[0] == "density":
+            dry = dry * quantities["molar_mass_dry"] / quantities["molar_mass"]
+        quantities["dry_standard_flow"] = standard * dry
+    points = {"velocity": flow["velocity"], "density": flow["density"], "root": root}
+    return Flow(points=points, quantities=quantities)
+
+
+def ratio_of_specific_heats(
+    inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array], temperature: Array
+) -> Array | float:
+    """Return the ratio of specific heats of the run: as stated, 1.4 for air and given gas, else from the composition."""
+    if setting.ratio_of_specific_heats is not None:
+        return setting.ratio_of_specific_heats
+    if setting.gas_kind != "flue-gas":
+        return 1.4
+    return gas.ratio_of_specific_heats(_species(inputs, setting, matter), temperature)
+
+
+def _mean(weight: Array, values: Array) -> Array:
+    """Area-weighted mean, keeping the point axis with length 1 (weights sum to 1)."""
+    if values.shape[-1] == 1 and weight.shape[-1] != 1:
+        return values
+    return np.sum(weight * values, axis=-1, keepdims=True)
+
+
+def _sum(values: Array) -> Array:
+    return np.asarray(np.sum(values, axis=-1))
+
+
+def _own(value: Array | np.float64, symbol: str) -> Array:
+    return np.asarray(value * convert(1.0, symbol))
+
+
+def _own_temperature(temperature: Array | np.float64, own: Constants) -> Array:
+    """Absolute temperature with the method's rounded offset: 460 + degF or 273 + degC."""
+    if own.temperature == "degF":
+        return np.asarray(temperature * 1.8 - 459.67 + own.temperature_offset)
+    return np.asarray(temperature - 273.15 + own.temperature_offset)

@@ -1,0 +1,50 @@
+"""The number of points the method wants for this section and site."""
+
+from collections.abc import Mapping
+from typing import Any
+
+from traverse.checks._base import Check, Verdict, View
+from traverse.model import Plane
+from traverse.tables import load
+from traverse.units import parse
+
+
+def decide(view: View) -> Verdict:
+    """Compare the number of points in the layout with the least number of the job's method."""
+    rule = load("site_rules")["point_count"].get(view.method.id)
+    if rule is None:
+        return Verdict(
+            status="not applicable", observed="", message="The method sets no number of points.", criterion="none", source=""
+        )
+    size = view.job.layout.size
+    wanted, why = _least(rule, view.job.plane)
+    if wanted is None:
+        return Verdict(
+            status="not evaluated", observed=f"{size} points", message=why, criterion="depends on the straight lengths",
+            source=rule["source"],
+        )
+    met = size >= wanted
+    return Verdict(
+        status="pass" if met else "fail", observed=f"{size} points", criterion=f"at least {wanted} points{why}",
+        source=rule["source"], message="" if met else "Too few points for the method.", effect="none" if met else "not estimated",
+    )
+
+
+def _least(rule: Mapping[str, Any], plane: Plane) -> tuple[int | None, str]:
+    shape = plane.section.shape
+    if "steps" not in rule:
+        return int(rule[shape]), ""
+    if plane.upstream is None or plane.downstream is None:
+        return None, "[plane] upstream and downstream are not both stated."
+    diameter = plane.section.hydraulic_diameter
+    before, after = plane.upstream.value / diameter, plane.downstream.value / diameter
+    for least_before, least_after, round_count, rectangle_count in rule["steps"]:
+        if before >= float(least_before) * (1 - 1e-9) and after >= float(least_after) * (1 - 1e-9):
+            count = int(round_count if shape == "round" else rectangle_count)
+            if count == 12 and diameter <= parse(rule["small_limit"], "length").value * (1 + 1e-12):
+                count = int(rule["small_round" if shape == "round" else "small_rectangle"])
+            return count, f" at {before:.2f} diameters before and {after:.2f} after"
+    return None, "The site is below the least distances; the simplified procedure does not apply."
+
+
+CHECK = Check(id="point-count", title="Number of points", scope="job", decide=decide)

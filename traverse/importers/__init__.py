@@ -1,0 +1,83 @@
+"""From files to a job: the job file and the readings beside it. One module per form of readings."""
+
+from __future__ import annotations
+
+import re
+from pathlib import Path
+
+from traverse import files
+from traverse.errors import JobError
+from traverse.importers import job, long_table
+from traverse.importers._document import Document
+from traverse.importers._grid import Told
+from traverse.importers._records import Table
+from traverse.model import Job, Setup
+
+__all__ = ["find_jobs", "load", "load_setup"]
+
+_WORKBOOKS = (".xlsx", ".xlsm", ".xls", ".ods")
+
+
+def load(path: str | Path) -> Job:
+    """Return the job that a job file describes, with its readings.
+
+    Parameters
+    ----------
+    path : str or Path
+        A TOML job file; the files it names are looked for beside it.
+
+    Raises
+    ------
+    TraverseError
+        With the place, what was found, what would be right, and the setting that says so.
+    """
+    return job.load(_job_file(path), _readings, long_table.points)
+
+
+def load_setup(path: str | Path) -> Setup:
+    """Return what a job file says before the first reading: section, layout, and what else is known."""
+    return job.load_setup(_job_file(path), _readings, long_table.points)
+
+
+def find_jobs(path: str | Path) -> list[Path]:
+    """Return the job files a path stands for: itself, or those of a folder in the order of their names.
+
+    Raises
+    ------
+    JobError
+        If there is nothing of that name, or no job file in the folder.
+    """
+    place = Path(path)
+    if not place.is_dir():
+        return [_job_file(place)]
+    found = [entry for entry in sorted(place.glob("*.toml")) if entry.is_file() and _is_job(entry)]
+    if not found:
+        raise JobError("no job file in the folder", where=str(path), expected="at least one .toml file with a [job] table")
+    return found
+
+
+def _is_job(path: Path) -> bool:
+    # By its text, not its meaning: a job file that is no valid TOML is still one, and its error must be seen.
+    return re.search(r"^\s*\[\s*job\s*\]|^\s*job\.", files.read_text(path)[0], re.M) is not None
+
+
+def _job_file(path: str | Path) -> Path:
+    place = Path(path)
+    if place.suffix.lower() in _WORKBOOKS:
+        raise JobError(
+            "field workbooks are not available in this version", where=place.name, expected="a job file (TOML) with readings as CSV"
+        )
+    if not place.is_file():
+        raise JobError("a folder" if place.is_dir() else "no such file", where=str(path), expected="a job file (TOML)")
+    return place
+
+
+def _readings(document: Document) -> Table:
+    """Read the readings of a job in the form the job says."""
+    table = document.table("readings")
+    table.need("file", "the file of the readings, beside the job file", 'for example file = "readings.csv"')
+    name = str(table.text("file"))
+    told = Told(decimal=table.text("decimal"), columns=table.get("columns") or {}, units=table.get("units") or {})
+    return long_table.read(document.beside(name), name, long_table.Wanted(
+        told=told, blank_as_above="blank" in table, meter_density=table.stated("meter_density"),
+    ))

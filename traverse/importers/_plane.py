@@ -1,0 +1,270 @@
+"""[plane], [pitot], [conditions], [reference], [design] and [corrections]: tables to records."""
+
+from __future__ import annotations
+
+import re
+from typing import Literal, cast
+
+from traverse import tables
+from traverse.errors import JobError
+from traverse.importers._schema import Table
+from traverse.methods import Method
+from traverse.model import Conditions, Corrections, Design, Finding, Pitot, Plane, Reference, Section
+from traverse.physics.atmosphere import pressure_at_altitude
+from traverse.units import UNITS, Stated, parse
+
+# Plausible pressures of the atmosphere at a station [Pa]: below 30 kPa is higher than any peak, above 120 kPa deeper
+# than any mine; and gauge pressures that look like absolute ones. Common practice, no source.
+STATION = (30e3, 120e3)
+LOOKS_ABSOLUTE = (80e3, 115e3)
+_DIMENSIONS = ("diameter", "circumference", "wall_thickness", "width", "height")
+
+
+def plane(table: Table) -> Plane:
+    """Return the measuring plane."""
+    table.need("shape", '"round" or "rectangle"')
+    shape = cast("Literal['round', 'rectangle']", table.text("shape"))
+    stated = {name: table.stated(name) for name in _DIMENSIONS if name in table}
+    dimensions = {name: value for name, value in stated.items() if value is not None}
+    _fitting(table, shape, dimensions)
+    for key in ("upstream", "downstream", "port_depth", "wall_thickness"):
+        length = table.stated(key)
+        if length is not None and length.value < 0:
+            raise JobError(f"{length.text!r}", where=table.where(key), expected="a length of zero or more")
+    return Plane(
+        section=Section(shape=shape, dimensions=dimensions), upstream=table.stated("upstream"),
+        downstream=table.stated("downstream"), port_depth=table.stated("port_depth"),
+        wall=cast("Literal['metal', 'brick'] | None", table.text("wall")),
+    )
+
+
+def _fitting(table: Table, shape: str, dimensions: dict[str, Stated]) -> None:
+    """Raise unless the stated dimensions are exactly those of the shape."""
+    wanted = "diameter or circumference" if shape == "round" else "width and height"
+    allowed = {"diameter", "circumference", "wall_thickness"} if shape == "round" else {"width", "height"}
+    for name in dimensions:
+        if name not in allowed:
+            raise JobError(f"a {shape} section has no {name}", where=table.where(name), expected=wanted)
+    if shape == "rectangle":
+        for name in ("width", "height"):
+            table.need(name, wanted)
+        return
+    if ("diameter" in dimensions) == ("circumference" in dimensions):
+        found = "both diameter and circumference" if "diameter" in dimensions else "neither diameter nor circumference"
+        raise JobError(found, where=table.name, expected="exactly one of diameter | circumference")
+    if "wall_thickness" not in dimensions:
+        return
+    if "diameter" in dimensions:
+        raise JobError(
+            "wall_thickness beside a diameter", where=table.where("wall_thickness"),
+            expected="the inside diameter alone, or circumference (outside) with wall_thickness",
+        )
+    around, wall = dimensions["circumference"].value, dimensions["wall_thickness"].value
+    if around / 3.141592653589793 <= 2 * wall:
+        raise JobError(
+            f"a wall of {dimensions['wall_thickness'].text}", where=table.where("wall_thickness"),
+            expected="a wall thinner than half the diameter",
+        )
+
+
+def units_system(table: Table, section: Section) -> tuple[Literal["si", "us"], tuple[Finding, ...]]:
+    """Return how the report speaks: as the job says, else as the section was measured."""
+    stated = table.text("units")
+    if stated is not None:
+        return cast("Literal['si', 'us']", stated), ()
+    inches = any(value.unit.symbol in {"in", "ft", "yd"} for value in section.dimensions.values())
+    system: Literal["si", "us"] = "us" if inches else "si"
+    return system, (Finding(
+        level="note", topic="units", setting="[job] units",
+        message=f'units is not stated; "{system}" because the section is given in {"inches or feet" if inches else "metric units"}.',
+    ),)
+
+
+def pitot(table: Table, method: Method) -> tuple[Pitot, tuple[Finding, ...]]:
+    """Return the probe, with the method's default coefficient where it allows one."""
+    kind, findings = table.text("type"), []
+    if kind is None:
+        kind = "pitot-static"
+        findings.append(Finding(
+            level="note", topic="pitot", setting="[pitot] type", message='type is not stated; "pitot-static" was taken.'
+        ))
+    coefficient, source = table.number("coefficient"), "[pitot] coefficient"
+    if coefficient is None:
+        if kind not in method.default_coefficients:
+            raise JobError(
+                "no coefficient", where=table.name,
+                expected=f"the calibrated coefficient; {method.id} has no default for a {kind} tube",
+                how="for example coefficient = 0.84",
+            )
+        coefficient, source = method.default_coefficients[kind], f"default of {method.id} for a {kind} tube"
+        findings.append(Finding(
+            level="note", topic="pitot", setting="[pitot] coefficient",
+            message=f"coefficient is not stated; {coefficient:.2f}, the {source}.",
+        ))
+    stem = table.stated("stem")
+    if stem is not None and not stem.value > 0:
+        raise JobError(f"{stem.text!r}", where=table.where("stem"), expected="a diameter above zero")
+    return Pitot(
+        type=cast("Literal['pitot-static', 's-type']", kind), coefficient=coefficient, coefficient_source=source, stem=stem
+    ), tuple(findings)
+
+
+def merge_conditions(base: Table, over: Table | None) -> Table:
+    """Return the conditions of one run; a [[run]] barometer replaces the default's altitude, and the reverse."""
+    if over is None:
+        return base
+    kept = dict(base.values)
+    if "barometric" in over:
+        kept = {key: value for key, value in kept.items() if key not in {"altitude", "model"}}
+    if "altitude" in over:
+        kept.pop("barometric", None)
+    return Table(over.name, {**kept, **over.values})
+
+
+def conditions(table: Table, *, static_column: bool = False) -> tuple[Conditions, tuple[Finding, ...]]:
+    """Return the state at the plane.
+
+    Raises
+    ------
+    JobError
+        If the barometric pressure is missing, stated twice, or not one an atmosphere can have, or if the static
+        pressure looks absolute.
+    """
+    barometric, source, findings = _barometric(table)
+    static = table.stated("static")
+    if static is not None:
+        _gauge(table, static)
+    elif not static_column:
+        findings.append(Finding(
+            level="attention", topic="static pressure", setting="[conditions] static",
+            message="static pressure not stated, taken as 0",
+        ))
+    temperature = table.stated("temperature")
+    if temperature is not None and not temperature.value > 0:
+        raise JobError(
+            f"{temperature.text!r}", where=table.where("temperature"), expected="a temperature above absolute zero"
+        )
+    return Conditions(
+        barometric=barometric, barometric_source=source, static=static, temperature=temperature
+    ), tuple(findings)
+
+
+def _barometric(table: Table) -> tuple[Stated, str, list[Finding]]:
+    stated, altitude = table.stated("barometric"), table.stated("altitude")
+    if stated is not None and altitude is not None:
+        raise JobError("both barometric and altitude", where=table.name, expected="exactly one of barometric | altitude")
+    if stated is not None:
+        if re.search(r"psig|gauge", stated.text, re.I) or not STATION[0] <= stated.value <= STATION[1]:
+            raise JobError(
+                f"a barometric pressure of {stated.text!r} ({stated.value / 1000:.4g} kPa)", where=table.where("barometric"),
+                expected="the absolute pressure at the station, 30 to 120 kPa (8.9 to 35.4 inHg)",
+                how="is this a gauge pressure, or a pressure reduced to sea level? give the station pressure",
+            )
+        if "model" in table:
+            raise JobError("model beside barometric", where=table.where("model"), expected="model only with altitude")
+        return stated, "[conditions] barometric", []
+    if altitude is None:
+        raise JobError(
+            "no barometric pressure", where=table.name, expected="the absolute pressure at the station",
+            how='barometric = "29.65 inHg", or altitude = "…" with model = "standard-atmosphere"',
+        )
+    if "model" not in table:
+        raise JobError(
+            "altitude without a model", where=table.where("altitude"), expected="the model that turns it into a pressure",
+            how='model = "standard-atmosphere"; a reading of a barometer is better',
+        )
+    pressure = float(pressure_at_altitude(altitude.value))
+    if not STATION[0] <= pressure <= STATION[1]:
+        raise JobError(f"{altitude.text!r}", where=table.where("altitude"), expected="an altitude from -500 m to 9000 m")
+    source = f"standard atmosphere at an altitude of {altitude.text}"
+    return Stated(pressure, pressure, UNITS["Pa"], altitude.text), source, [Finding(
+        level="attention", topic="barometric pressure", setting="[conditions] barometric",
+        message=f"{pressure:.0f} Pa by the {source}; a barometer may differ by some percent.",
+    )]
+
+
+def _gauge(table: Table, static: Stated) -> None:
+    low, high = LOOKS_ABSOLUTE
+    if re.search(r"psia|abs", static.text, re.I) or low <= static.value <= high:
+        raise JobError(
+            f"a static pressure of {static.text!r} looks absolute", where=table.where("static"),
+            expected="the gauge pressure at the plane (negative under suction)", how="subtract the barometric pressure",
+        )
+
+
+def reference(table: Table) -> Reference | None:
+    """Return the standard conditions the job states, None where it states none."""
+    if not table.values:
+        return None
+    temperature, pressure, density = table.stated("temperature"), table.stated("pressure"), table.stated("density")
+    if density is not None and (temperature is not None or pressure is not None):
+        raise JobError("density beside temperature or pressure", where=table.name, expected="temperature and pressure, or density")
+    if density is None and (temperature is None or pressure is None):
+        lacking = "temperature" if temperature is None else "pressure"
+        raise JobError(f"no {lacking}", where=table.name, expected="both temperature and pressure, or density")
+    stated = [value for value in (temperature, pressure, density) if value is not None]
+    for value in stated:
+        if not value.value > 0:
+            raise JobError(f"{value.text!r}", where=table.name, expected="a value above zero")
+    if pressure is not None and pressure.value < 10e3:
+        raise JobError(f"{pressure.text!r}", where=table.where("pressure"), expected="an absolute pressure")
+    return Reference(
+        temperature=temperature, pressure=pressure, density=density,
+        source=f"[reference] {' and '.join(value.text for value in stated)}",
+    )
+
+
+def design(table: Table) -> Design | None:
+    """Return the design flow, None where the job states none."""
+    if not table.values:
+        return None
+    table.need("actual_flow", 'the design flow at the conditions of the plane, such as "24000 cfm"')
+    flow = table.stated("actual_flow")
+    assert flow is not None
+    if not flow.value > 0:
+        raise JobError(f"{flow.text!r}", where=table.where("actual_flow"), expected="a flow above zero")
+    text = table.text("tolerance")
+    return Design(actual_flow=flow, tolerance=None if text is None else _tolerance(table, text))
+
+
+def _tolerance(table: Table, text: str) -> Stated:
+    match = re.fullmatch(r"\s*(?:±|\+/?-)\s*(.+)", text)
+    if match is None:
+        raise JobError(f"{text!r}", where=table.where("tolerance"), expected='a symmetric tolerance such as "±10 %"')
+    value = parse(match.group(1), "fraction", table.where("tolerance"))
+    if not 0 < value.value < 1:
+        raise JobError(f"{text!r}", where=table.where("tolerance"), expected="a percentage between 0 and 100 %")
+    return Stated(value.value, value.number, value.unit, text)
+
+
+def corrections(table: Table, measured: Plane) -> tuple[Corrections, tuple[Finding, ...]]:
+    """Return the corrections that the job names; nothing is corrected otherwise."""
+    factor, source, findings = _wall_factor(table, measured)
+    turbulence = table.stated("turbulence")
+    if turbulence is not None and not 0 <= turbulence.value < 1:
+        raise JobError(f"{turbulence.text!r}", where=table.where("turbulence"), expected="a percentage from 0 to below 100 %")
+    return Corrections(
+        wall_factor=factor, wall_factor_source=source, turbulence=turbulence, blockage=table.flag("blockage")
+    ), findings
+
+
+def _wall_factor(table: Table, measured: Plane) -> tuple[float | None, str, tuple[Finding, ...]]:
+    value, where = table.get("wall_factor"), table.where("wall_factor")
+    if value is None:
+        return None, "", ()
+    if isinstance(value, (int, float)) and not isinstance(value, bool):
+        if not 0.9 <= value <= 1.0:
+            raise JobError(f"a wall factor of {value:g}", where=where, expected="a number from 0.9 to 1")
+        return float(value), "[corrections] wall_factor", ()
+    if value != "default":
+        raise JobError(f"{value!r}", where=where, expected='a bare number, or "default"')
+    if measured.section.shape != "round":
+        raise JobError('"default" in a rectangle', where=where, expected="a round section; the default is for round stacks only")
+    if measured.wall is None:
+        raise JobError('"default" without [plane] wall', where=where, expected='[plane] wall = "metal" or "brick"')
+    table_2h = tables.load("wall_factor")
+    factor, source = float(table_2h["default"][measured.wall]), str(table_2h["source"])
+    return factor, source, (Finding(
+        level="note", topic="wall factor", setting="[corrections] wall_factor",
+        message=f"wall factor {factor:.4f}, the default for a {measured.wall} wall ({source}).",
+    ),)

@@ -1,0 +1,168 @@
+"""The job file with its readings: tables of the document to the records of a job or of a plan."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Literal, cast
+
+from traverse import methods
+from traverse.errors import JobError
+from traverse.importers import _document, _gas, _layout, _plane, _runs, _uncertainty
+from traverse.importers._document import Document
+from traverse.importers._labels import point_number
+from traverse.importers._matching import Plan
+from traverse.importers._records import Record
+from traverse.importers._records import Table as ReadingTable
+from traverse.methods import Method
+from traverse.model import Corrections, Finding, Job, Layout, Plane, Policies, Run, Setup, Source
+
+# How the readings of a document, and a file of custom points, are read: given by the importer of their form.
+ReadReadings = Callable[[Document], ReadingTable]
+ReadPoints = Callable[[Path, str], "tuple[Source, list[Record]]"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Frame:
+    """What a job and a plan have in common."""
+
+    document: Document
+    method: Method
+    units: Literal["si", "us"]
+    plane: Plane
+    layout: Layout
+    table: ReadingTable | None
+    sources: tuple[Source, ...]
+    findings: tuple[Finding, ...]
+
+
+def load(path: Path, readings: ReadReadings, points: ReadPoints) -> Job:
+    """Return the job of a job file."""
+    document = _document.read(path)
+    table = readings(document)
+    frame = _frame(document, table, readings, points)
+    corrections, correction_findings = _plane.corrections(document.table("corrections"), frame.plane)
+    runs, run_findings = _runs.build(document, table, _plan(frame), frame.method)
+    _refuse_blockage(corrections, runs)
+    return Job(
+        title=_title(document), date=document.table("job").get("date"), method=frame.method.id, units=frame.units,
+        plane=frame.plane, layout=frame.layout, runs=runs, reference=_plane.reference(document.table("reference")),
+        uncertainties=_uncertainty.build(document.uncertainty, runs), design=_plane.design(document.table("design")),
+        corrections=corrections, policies=_policies(document), sources=(*frame.sources, table.source),
+        findings=tuple(dict.fromkeys((*frame.findings, *table.findings, *correction_findings, *run_findings))),
+    )
+
+
+def load_setup(path: Path, readings: ReadReadings, points: ReadPoints) -> Setup:
+    """Return what a job file says before the first reading; gas, conditions and pitot may be absent."""
+    document = _document.read(path)
+    frame = _frame(document, None, readings, points)
+    findings = list(frame.findings)
+    pitot = gas = conditions = None
+    if document.table("pitot").values:
+        coefficient = "coefficient" in document.table("pitot")
+        if coefficient or (document.table("pitot").text("type") or "pitot-static") in frame.method.default_coefficients:
+            pitot, found = _plane.pitot(document.table("pitot"), frame.method)
+            findings += found
+    if document.table("gas").values:
+        gas, found = _gas.build(document.table("gas"))
+        findings += found
+    state = document.table("conditions")
+    if "barometric" in state or "altitude" in state:
+        conditions, found = _plane.conditions(state, static_column=True)
+        findings += found
+    return Setup(
+        title=_title(document), date=document.table("job").get("date"), method=frame.method.id, units=frame.units,
+        plane=frame.plane, layout=frame.layout, pitot=pitot, gas=gas, conditions=conditions,
+        design=_plane.design(document.table("design")), sources=frame.sources, findings=tuple(dict.fromkeys(findings)),
+    )
+
+
+def _title(document: Document) -> str:
+    return document.table("job").text("title") or document.path.stem
+
+
+def _frame(document: Document, table: ReadingTable | None, readings: ReadReadings, points: ReadPoints) -> Frame:
+    head, findings = document.table("job"), list(document.findings)
+    if "method" not in head:
+        findings.append(Finding(
+            level="note", topic="method", setting="[job] method", message='method is not stated; "exact" was taken.'
+        ))
+    method = methods.get(head.text("method") or "exact")
+    plane = _plane.plane(document.table("plane"))
+    units, found = _plane.units_system(head, plane.section)
+    findings += found
+    sources = [document.source]
+    layout_table = document.table("layout")
+    if _layout.is_custom(layout_table):
+        layout, extra = _custom(document, plane, table, readings, points)
+        sources += extra
+    else:
+        layout = _layout.build(layout_table, plane.section, method, units)
+    return Frame(
+        document=document, method=method, units=units, plane=plane, layout=layout, table=table, sources=tuple(sources),
+        findings=tuple(findings),
+    )
+
+
+def _custom(
+    document: Document, plane: Plane, table: ReadingTable | None, readings: ReadReadings, points: ReadPoints
+) -> tuple[Layout, list[Source]]:
+    """Return a layout whose points stand in the job file, in a file of points, or in the readings themselves."""
+    layout_table = document.table("layout")
+    stated = _layout.stated_points(layout_table)
+    if stated is not None:
+        return _layout.custom(layout_table, plane.section, stated), []
+    name = layout_table.text("file")
+    if name is not None:
+        source, records = points(document.beside(name), name)
+        return _layout.custom(layout_table, plane.section, _collected(records, name)), [source]
+    if "file" not in document.table("readings"):
+        raise JobError(
+            "custom points, but none are given", where="[layout]",
+            expected="points = [...], depths with weights and lines, file, or columns depth (or x, y) and weight in the readings",
+        )
+    table = table or readings(document)
+    first = next(iter(table.runs.values()))
+    return _layout.custom(layout_table, plane.section, _collected(first, table.source.name)), []
+
+
+def _collected(records: list[Record] | tuple[Record, ...], name: str) -> _layout.Points:
+    """Return the points that rows of a table give."""
+    found = _layout.Points()
+    if not any("weight" in record.value for record in records):
+        raise JobError(
+            "custom points without weights", where=name, expected="a weight column: the share of the area of each point"
+        )
+    for record in records:
+        line = record.line or "A"
+        number = point_number(record) if record.point else found.line.count(line) + 1
+        _layout.append(found, line, number, **{key: record.si(key) for key in ("depth", "x", "y", "weight")})
+    return found
+
+
+def _plan(frame: Frame) -> Plan:
+    section, table = frame.plane.section, frame.document.table("layout")
+    length = section.width if section.shape == "round" or table.text("along") == "width" else section.height
+    return Plan(
+        layout=frame.layout, length=length, order=table.text("order"),
+        repeats="repeats" in frame.document.table("readings"),
+    )
+
+
+def _policies(document: Document) -> Policies:
+    table = document.table("readings")
+    return Policies(
+        negative=cast("Literal['method', 'zero', 'signed', 'omit']", table.text("negative") or "method"),
+        missing=cast("Literal['error', 'neighbour', 'omit']", table.text("missing") or "error"),
+        below=cast("Literal['half', 'zero', 'limit']", table.text("below") or "half"),
+    )
+
+
+def _refuse_blockage(corrections: Corrections, runs: tuple[Run, ...]) -> None:
+    if corrections.blockage and any(run.pitot.stem is None for run in runs):
+        raise JobError(
+            "blockage = true without the stem of the probe", where="[corrections] blockage",
+            expected="the diameter of the stem", how='[pitot] stem = "1 in"',
+        )

@@ -1,0 +1,95 @@
+"""How much water a gas holds, from whichever humidity was measured."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+import numpy as np
+import numpy.typing as npt
+
+from traverse import tables
+from traverse.physics.gas import MOLAR_MASS
+from traverse.physics.water import saturation_pressure
+
+Array = npt.NDArray[np.float64]
+# Molar mass of water over that of dry air: humidity ratio to mole ratio.
+RATIO = MOLAR_MASS["H2O"] / MOLAR_MASS["air"]
+WET_BULB = {
+    branch: {name: float(text) for name, text in values.items()}
+    for branch, values in tables.load("psychrometrics")["wet_bulb"].items()
+}
+_CELSIUS = 273.15
+
+
+def mole_fraction(form: str, value: npt.ArrayLike, temperature: npt.ArrayLike, pressure: npt.ArrayLike) -> Array:
+    """Return the mole fraction of water vapour in the wet gas.
+
+    Parameters
+    ----------
+    form : str
+        ``relative_humidity`` (fraction), ``wet_bulb`` [K], ``dew_point`` [K], ``humidity_ratio`` [kg/kg dry],
+        ``moisture`` (the mole fraction itself), ``saturated`` or ``dry`` (``value`` is not used).
+    value : array_like, shape (...)
+    temperature : array_like, shape (...)
+        Of the gas. [K]
+    pressure : array_like, shape (...)
+        Absolute. [Pa]
+
+    Returns
+    -------
+    array, shape (...)
+        NaN for what cannot be: more water than saturation, a wet bulb or dew point above the dry bulb, a negative
+        humidity, a saturated gas at or above boiling.
+
+    Notes
+    -----
+    Ideal gas; no enhancement factor (it raises the fraction by 0.4 to 0.6 % of itself near room temperature).
+    Wet bulb: ASHRAE Fundamentals 2017, chapter 1, equations 33 (water) and 35 (ice).
+    """
+    t = np.asarray(temperature, dtype=np.float64)
+    p = np.asarray(pressure, dtype=np.float64)
+    v = np.asarray(value, dtype=np.float64)
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        x = _FORMS[form](v, t, p)
+        limit = np.minimum(saturation_pressure(t) / p, 1.0)
+        possible = (x >= 0.0) & (x <= limit * (1.0 + 1e-9)) & (x < 1.0)
+    return np.asarray(np.where(possible, x, np.nan))
+
+
+def _relative(v: Array, t: Array, p: Array) -> Array:
+    x = np.where(v == 0.0, 0.0, v * saturation_pressure(t) / p)
+    return np.where((v >= 0.0) & (v <= 1.0), x, np.nan)
+
+
+def _dew_point(v: Array, t: Array, p: Array) -> Array:
+    return np.where(v <= t, saturation_pressure(v) / p, np.nan)
+
+
+def humidity_ratio_from_wet_bulb(wet_bulb: Array, temperature: Array, pressure: Array) -> Array:
+    """Return the humidity ratio from dry and wet bulb. [kg/kg]  NaN where the wet bulb is above the dry bulb."""
+    td, tw = temperature - _CELSIUS, wet_bulb - _CELSIUS
+    saturated = saturation_pressure(wet_bulb)
+    ws = np.where(saturated < pressure, RATIO * saturated / (pressure - saturated), np.nan)
+
+    def branch(c: dict[str, float]) -> Array:
+        top = (c["latent"] - c["slope"] * tw) * ws - c["heat"] * (td - tw)
+        return np.asarray(top / (c["latent"] + c["vapour"] * td - c["liquid"] * tw))
+
+    w = np.where(wet_bulb < _CELSIUS, branch(WET_BULB["ice"]), branch(WET_BULB["water"]))
+    return np.asarray(np.where(tw <= td, w, np.nan))
+
+
+def _wet_bulb(v: Array, t: Array, p: Array) -> Array:
+    w = humidity_ratio_from_wet_bulb(v, t, p)
+    return w / (w + RATIO)
+
+
+_FORMS: dict[str, Callable[[Array, Array, Array], Array]] = {
+    "relative_humidity": _relative,
+    "wet_bulb": _wet_bulb,
+    "dew_point": _dew_point,
+    "humidity_ratio": lambda v, t, p: v / (v + RATIO) + 0.0 * (t + p),
+    "moisture": lambda v, t, p: v + 0.0 * (t + p),
+    "saturated": lambda v, t, p: saturation_pressure(t) / p + 0.0 * v,
+    "dry": lambda v, t, p: 0.0 * (v + t + p),
+}

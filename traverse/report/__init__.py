@@ -1,0 +1,1 @@
+"""What a reader gets: text, workbook, figures, tables."""

@@ -1,0 +1,43 @@
+"""How the pages look: one sober theme, named styles, nothing left at the library's default."""
+
+from __future__ import annotations
+
+from openpyxl.styles import Alignment, Border, Font, NamedStyle, PatternFill, Side
+
+FACE = "Calibri"
+INK, RULE, BAND = "FF1F2A36", "FFB8C2CC", "FFE9EEF3"
+# Text colour, background, bold, size, wrapped, horizontal, underline rule.
+_STYLES: dict[str, tuple[str, str | None, bool, float, bool, str, bool]] = {
+    "title": (INK, None, True, 15, False, "left", False),
+    "subtitle": ("FF0B3C6F", None, True, 11.5, False, "left", False),
+    "heading": (INK, BAND, True, 9.5, True, "left", True),
+    "label": (INK, None, False, 9.5, False, "left", False),
+    "text": (INK, None, False, 9.5, True, "left", False),
+    "line": (INK, None, False, 9.5, False, "left", False),
+    "value": (INK, None, False, 9.5, False, "right", False),
+    "input": ("FF0B3C6F", "FFF7F4E9", False, 9.5, False, "right", False),
+    "result": (INK, "FFDDE8F3", True, 10, False, "right", False),
+    "unit": ("FF5A6672", None, False, 9.5, False, "left", False),
+    "note": ("FF5A6672", None, False, 9, False, "left", False),
+    "source": ("FF5A6672", None, False, 8.5, True, "left", False),
+    "faint": ("FF7A858F", None, False, 9, False, "right", False),
+    "verbatim": (INK, None, False, 9, False, "left", False),
+    "pass": ("FF1B5E3A", "FFE3F1E8", True, 9.5, False, "left", False),
+    "fail": ("FF8C1C13", "FFFBE4E1", True, 9.5, True, "left", False),
+    "attention": ("FF7A4B00", "FFFDF1DA", True, 9.5, True, "left", False),
+}
+
+
+def styles() -> dict[str, NamedStyle]:
+    """Return the named styles of the workbook."""
+    found: dict[str, NamedStyle] = {}
+    for name, (colour, fill, bold, size, wrapped, side, ruled) in _STYLES.items():
+        style = NamedStyle(name=f"traverse {name}")
+        style.font = Font(name="Consolas" if name == "verbatim" else FACE, size=size, bold=bold, color=colour)
+        style.alignment = Alignment(horizontal=side, vertical="top" if wrapped else "center", wrap_text=wrapped)
+        if fill:
+            style.fill = PatternFill("solid", fgColor=fill)
+        if ruled:
+            style.border = Border(bottom=Side(style="thin", color=RULE))
+        found[name] = style
+    return found

@@ -1,0 +1,52 @@
+"""One run as the chain saw it: its inputs and equations, for the values that stand beside the formulas."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from traverse.chain import Setting, composition, ratio_of_specific_heats, roots
+from traverse.model import Array
+from traverse.report.sheets._view import View
+from traverse.result import RunResult
+from traverse.treatment import inputs, setting
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class RunView:
+    """Arrays have shape (points,); ``mean`` and ``matter`` are numbers."""
+
+    index: int
+    result: RunResult
+    inputs: dict[str, Array]
+    setting: Setting
+    pressure: Array
+    root: Array
+    mean: dict[str, float]
+    matter: dict[str, float]
+    ratio: float
+
+    @classmethod
+    def of(cls, view: View, index: int) -> RunView:
+        """Return the view of one run."""
+        job, result = view.result.job, view.result.runs[index]
+        arrays = inputs(job, result.run, view.method, result.treated)
+        equations = setting(job, result.run, view.method, signed=job.policies.negative == "signed")
+        pressure = arrays["barometric"] + arrays["static"]
+        weight = result.treated.weight
+        mean = {
+            "temperature": float(np.sum(weight * arrays["temperature"])),
+            "static": float(np.sum(weight * arrays["static"])), "pressure": float(np.sum(weight * pressure)),
+        }
+        matter = composition(arrays, equations, np.array([mean["temperature"]]), np.array([mean["pressure"]]))
+        return cls(
+            index=index, result=result, inputs=arrays, setting=equations, pressure=pressure,
+            root=roots(arrays["differential_pressure"], signed=equations.signed), mean=mean,
+            matter={name: float(np.ravel(value)[0]) for name, value in matter.items()},
+            ratio=float(np.ravel(ratio_of_specific_heats(arrays, equations, matter, np.array([mean["temperature"]])))[0]),
+        )
+
+    def input(self, name: str) -> float:
+        """Return an input that holds for the whole run."""
+        return float(np.ravel(self.inputs[name])[0])

@@ -1,0 +1,144 @@
+"""From the sums over the points to every reported quantity, as formulas."""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+
+from traverse.physics import gas, sections
+from traverse.quantities import BY_NAME
+from traverse.report.sheets._ledger import Ledger
+from traverse.report.sheets._run_view import RunView
+from traverse.report.sheets._view import View
+
+_SPECIES = ("oxygen", "carbon_dioxide", "carbon_monoxide", "sulfur_dioxide")
+
+
+def total_rows(ledger: Ledger, view: View, run: RunView) -> None:
+    """Put area, mean velocity, flows, density and Reynolds number."""
+    ledger.title("Flow")
+    last, prefix = view.layout.size - 1, ledger.prefix
+
+    def column(name: str) -> str:
+        return f"«{prefix}.{name}.0:{prefix}.{name}.{last}»"
+
+    value = run.result.value
+    ledger.live("A", "Area", _area(view), value("area"), "m2")
+    ledger.live("mr", "Mean root of differential pressure", f"SUMPRODUCT({column('w')},{column('root')})",
+                value("mean_root_differential_pressure"), "Pa^0.5", "area-weighted mean of the roots")
+    if run.setting.arithmetic == "root-mean":
+        _root_mean(ledger, run)
+    factor = "*{wall_factor}" if view.result.job.corrections.wall_factor is not None else ""
+    ledger.live("V", "Mean velocity", f"SUM({column('wv')}){factor}", value("mean_velocity"), "m/s", "sum of weight x velocity",
+                style="result")
+    ledger.live("Q", "Actual flow (wet)", "{A}*{V}", value("actual_flow"), "m3/s", "area x mean velocity", style="result")
+    if run.setting.arithmetic == "root-mean":
+        ledger.live("m", "Mass flow", "{rho}*{Q}", value("mass_flow"), "kg/s", "density x actual flow", style="result")
+    else:
+        ledger.live("m", "Mass flow", f"{{A}}*SUM({column('wvr')}){factor}", value("mass_flow"), "kg/s",
+                    "summed over the points", style="result")
+    if value("actual_flow") != 0.0:
+        ledger.live("rhom", "Density", "{m}/{Q}", value("density"), "kg/m3", "mass flow over actual flow")
+    else:
+        ledger.number("rhom", "Density", value("density"), "kg/m3", "no flow: area-weighted mean")
+    _standard(ledger, run, column("wvs") if run.setting.reference else "", factor)
+    _reynolds(ledger, view, run)
+
+
+def _area(view: View) -> str:
+    section = view.result.job.plane.section
+    if section.shape == "rectangle":
+        return "{width}*{height}"
+    if "diameter" in section.dimensions:
+        return "PI()/4*{diameter}^2"
+    wall = "-2*{wall_thickness}" if "wall_thickness" in section.dimensions else ""
+    return f"PI()/4*({{circumference}}/PI(){wall})^2"
+
+
+def _root_mean(ledger: Ledger, run: RunView) -> None:
+    """Put the method's own arithmetic: its units, its offsets, its constant."""
+    own = run.setting.constants
+    assert own is not None, "root-mean arithmetic has constants"
+    from traverse.units import UNITS
+
+    mercury, head, speed = UNITS[own.pressure], UNITS[own.head], UNITS[own.velocity]
+    ledger.number("f.mercury", f"  {own.pressure} in Pa", mercury.factor, "Pa", mercury.source)
+    ledger.number("f.head", f"  {own.head} in Pa", head.factor, "Pa", head.source)
+    ledger.number("f.speed", f"  {own.velocity} in m/s", speed.factor, "m/s", speed.source)
+    scale = "{Tm}*1.8-459.67" if own.temperature == "degF" else "{Tm}-273.15"
+    shown = UNITS[own.temperature].from_si(run.mean["temperature"])
+    ledger.live("Ts", "Absolute temperature by the method", f"{scale}+{{offset}}", shown + own.temperature_offset,
+                "degR" if own.temperature == "degF" else "K", f"{own.temperature} + offset as printed", fmt="0.00")
+    absolute = run.input("barometric") / mercury.factor + run.mean["static"] / head.factor / own.water_over_mercury
+    ledger.live("Ps", "Absolute pressure by the method", "{barometric}/{f.mercury}+{psm}/{f.head}/{ratio}", absolute, own.pressure,
+                "barometric + static/13.6")
+    own_root = run.result.value("mean_root_differential_pressure") / math.sqrt(head.factor)
+    ledger.live("mro", "Mean root in the method's unit", "{mr}/SQRT({f.head})", own_root, f"{own.head}^0.5")
+    per_root = (
+        own.velocity_constant * run.input("coefficient")
+        * math.sqrt((shown + own.temperature_offset) / (absolute * run.matter["molar_mass"])) / math.sqrt(head.factor) * speed.factor
+    )
+    ledger.live("speed_per_root", "Velocity per root", "{Kp}*{coefficient}*SQRT({Ts}/({Ps}*{M}))/SQRT({f.head})*{f.speed}", per_root,
+                "m/s per Pa^0.5", "Method 2, equation 2-7")
+
+
+def _standard(ledger: Ledger, run: RunView, column: str, factor: str) -> None:
+    """Put the standard flows, wet and dry."""
+    value = run.result.value("standard_flow")
+    if not math.isfinite(value):
+        return
+    reference = run.setting.reference
+    assert reference is not None, "there is a standard flow"
+    own = run.setting.constants
+    if own is None:
+        formula, note = f"{{A}}*SUM({column}){factor}", "summed over the points"
+    elif reference[0] == "density":
+        formula, note = "{m}/{reference_density}", "mass flow over standard density"
+    else:
+        scale = "{reference_temperature}*1.8-459.67" if own.temperature == "degF" else "{reference_temperature}-273.15"
+        formula = f"{{Q}}*(({scale}+{{offset}})/{{Ts}})*({{Ps}}/({{reference_pressure}}/{{f.mercury}}))"
+        note = "Method 2, equation 2-8 without the dry fraction"
+    ledger.live("Qs", "Standard flow (wet)", formula, value, "m3/s", note, style="result")
+    dry = run.result.value("dry_standard_flow")
+    if math.isfinite(dry):
+        formula = "{Qs}*(1-{x})" + ("*{Md}/{M}" if reference[0] == "density" else "")
+        ledger.live("Qsd", "Standard flow (dry)", formula, dry, "m3/s", "without the water vapour", style="result")
+
+
+def _reynolds(ledger: Ledger, view: View, run: RunView) -> None:
+    """Put hydraulic diameter, viscosity and Reynolds number."""
+    section, temperature = view.result.job.plane.section, run.mean["temperature"]
+    size = {name: stated.value for name, stated in section.dimensions.items()}
+    if section.shape == "rectangle":
+        ledger.live("D", "Hydraulic diameter", "2*{width}*{height}/({width}+{height})",
+                    float(sections.hydraulic_diameter("rectangle", size)), "m", "four times the area over the perimeter")
+    else:
+        ledger.live("D", "Hydraulic diameter", "2*SQRT({A}/PI())", section.hydraulic_diameter, "m", "four times the area over the perimeter")
+    if run.setting.gas_kind != "flue-gas":
+        formula = f"{gas.AIR_BETA!r}*{{Tm}}^1.5/({{Tm}}+{gas.AIR_SUTHERLAND!r})"
+        ledger.live("mu", "Viscosity of air", formula, float(gas.air_viscosity(temperature)), "Pa s",
+                    "Sutherland's law, US Standard Atmosphere 1976", fmt="0.000E+00")
+    else:
+        wet = gas.wet_composition(*(run.input(name) for name in _SPECIES), run.matter["moisture"])
+        _viscosity(ledger, run, {name: float(fraction) for name, fraction in wet.items()})
+    ledger.live("Re", BY_NAME["reynolds_number"].label, "ABS({rhom}*{V})*{D}/{mu}", run.result.value("reynolds_number"), "1", fmt="#,##0")
+
+
+def _viscosity(ledger: Ledger, run: RunView, wet: dict[str, float]) -> None:
+    """Put the viscosity of a flue gas by Herning and Zipperer."""
+    temperature, top, bottom = run.mean["temperature"], [], []
+    for name, fraction in wet.items():
+        if fraction == 0.0:
+            continue
+        mu0, s = gas.VISCOSITY[name]
+        root, t0 = math.sqrt(gas.MOLAR_MASS[name]), gas.VISCOSITY_T0
+        formula = f"{mu0!r}*({{Tm}}/{t0!r})^1.5*({t0!r}+{s!r})/({{Tm}}+{s!r})"
+        ledger.live(f"mu.{name}", f"  viscosity of {name}", formula,
+                    mu0 * (temperature / t0) ** 1.5 * (t0 + s) / (temperature + s), "Pa s", "Sutherland's law", fmt="0.000E+00")
+        ledger.number(f"y.{name}", f"  mole fraction of {name} times the root of its molar mass", fraction * root, "1")
+        top.append(f"{{y.{name}}}*{{mu.{name}}}")
+        bottom.append(f"{{y.{name}}}")
+    wet_arrays = {name: np.float64(fraction) for name, fraction in wet.items()}
+    ledger.live("mu", "Viscosity", f"({'+'.join(top)})/({'+'.join(bottom)})", float(gas.viscosity(wet_arrays, temperature)), "Pa s",
+                "Herning and Zipperer", fmt="0.000E+00")

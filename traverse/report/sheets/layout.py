@@ -1,0 +1,84 @@
+"""The points: where they lie, what share of the area each stands for, the marks on the probe, a drawn section."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from traverse.report.sheets._view import View, heads
+from traverse.report.spec import Live, ScatterChart, Series, SheetSpec, Text
+from traverse.units import UNITS
+
+ORDER, TITLE = 30, "Layout"
+HEADS = ("point", "line", "no.", "x", "y", "depth", "mark on probe", "weight", "moved")
+FIRST = 9
+
+
+def sheets(view: View) -> list[SheetSpec]:
+    """Return the layout page."""
+    sheet = SheetSpec(TITLE)
+    layout, job, unit = view.layout, view.result.job, view.length_unit
+    sheet.put(1, 1, Text("Layout of the measuring points"), style="title")
+    size = ", ".join(f"{name.replace('_', ' ')} {stated.text}" for name, stated in job.plane.section.dimensions.items())
+    facts = (
+        ("Rule", f"{layout.title}; positions {layout.digits}"), ("Source", layout.source),
+        ("Section", f"{job.plane.section.shape}, {size}, looking downstream; x to the right, y up from the centre"),
+        ("Depth", "from the inner wall at the port; mark on probe = depth + port depth"),
+    )
+    for row, (label, text) in enumerate(facts, start=2):
+        sheet.put(row, 1, Text(label), style="label")
+        sheet.put(row, 2, Text(text), style="text")
+    nipple = job.plane.port_depth
+    sheet.put(6, 1, Text("Port depth"), style="label")
+    sheet.put(6, 2, view.length(nipple.value) if nipple else 0.0, style="input", format=view.length_format(), key="port_depth",
+              note="Length of the port nipple, added to every mark on the probe.")
+    sheet.put(6, 3, Text(unit if nipple else f"{unit} (not stated)"), style="unit")
+    heads(sheet, FIRST - 1, tuple(f"{name} [{unit}]" if name in {"x", "y", "depth", "mark on probe"} else name for name in HEADS))
+    for i in range(layout.size):
+        _point(sheet, view, i)
+    last = layout.size - 1
+    sheet.put(FIRST + layout.size, 7, Text("sum of weights"), style="label")
+    sheet.put(FIRST + layout.size, 8, Live(f"=SUM(«lay.w.0:lay.w.{last}»)", float(np.sum(layout.weight))), style="value",
+              format="0.000000", key="lay.sum")
+    _outline(sheet, view)
+    return [sheet]
+
+
+def _point(sheet: SheetSpec, view: View, i: int) -> None:
+    layout, row, fmt = view.layout, FIRST + i, view.length_format()
+    nipple = view.result.job.plane.port_depth
+    sheet.put(row, 1, Text(layout.labels()[i]), style="label", key=f"lay.label.{i}")
+    sheet.put(row, 2, Text(layout.line[i]), style="text")
+    sheet.put(row, 3, layout.point[i], style="value", format="0")
+    for column, name in ((4, "x"), (5, "y"), (6, "depth")):
+        sheet.put(row, column, view.length(float(getattr(layout, name)[i])), style="value", format=fmt, key=f"lay.{name}.{i}")
+    mark = view.length(float(layout.depth[i])) + (view.length(nipple.value) if nipple else 0.0)
+    sheet.put(row, 7, Live(f"=«lay.depth.{i}»+«port_depth»", mark), style="value", format=fmt)
+    sheet.put(row, 8, float(layout.weight[i]), style="value", format="0.000000", key=f"lay.w.{i}")
+    sheet.put(row, 9, Text("to the wall distance" if layout.moved[i] else ""), style="note")
+
+
+def _outline(sheet: SheetSpec, view: View) -> None:
+    """Put the outline of the section beside the table, and draw it with the points at true scale."""
+    section, layout = view.result.job.plane.section, view.layout
+    if section.shape == "round":
+        angle = np.linspace(0.0, 2.0 * np.pi, 73)
+        x, y = section.width / 2 * np.cos(angle), section.height / 2 * np.sin(angle)
+    else:
+        x = np.array([-1, 1, 1, -1, -1]) * section.width / 2
+        y = np.array([-1, -1, 1, 1, -1]) * section.height / 2
+    heads(sheet, FIRST - 1, (f"outline x [{view.length_unit}]", f"outline y [{view.length_unit}]"), column=12)
+    for i, (a, b) in enumerate(zip(x, y, strict=True)):
+        sheet.put(FIRST + i, 12, view.length(float(a)), style="faint", format=view.length_format(), key=f"lay.ox.{i}")
+        sheet.put(FIRST + i, 13, view.length(float(b)), style="faint", format=view.length_format(), key=f"lay.oy.{i}")
+    series = [Series("inner wall", f"lay.ox.0:lay.ox.{len(x) - 1}", f"lay.oy.0:lay.oy.{len(x) - 1}", "outline")]
+    for name in layout.lines:
+        index = [i for i, line in enumerate(layout.line) if line == name]
+        if index == list(range(index[0], index[-1] + 1)):
+            series.append(Series(
+                f"line {name}", f"lay.x.{index[0]}:lay.x.{index[-1]}", f"lay.y.{index[0]}:lay.y.{index[-1]}", "points"
+            ))
+    half = UNITS[view.length_unit].from_si(max(section.width, section.height)) * 0.55
+    sheet.chart(ScatterChart(
+        title="Section, looking downstream", x_title=f"x [{view.length_unit}]", y_title=f"y [{view.length_unit}]",
+        series=tuple(series), anchor="O8", width_cm=15, height_cm=15, square=True, x_min=-half, x_max=half, y_min=-half, y_max=half,
+    ))

@@ -1,0 +1,202 @@
+"""From a run's records to the arrays of the chain: the rules for readings that are not plain numbers, stated once."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+import numpy.typing as npt
+
+from traverse.chain import Setting
+from traverse.errors import DomainError, ReadingError
+from traverse.methods import Method
+from traverse.model import COMPONENTS, UNREAD, Array, Corrections, Job, Layout, Policies, Readings, Reference, Run, frozen
+
+Flags = npt.NDArray[np.bool_]
+# Blockage of the section by a cylindrical stem: relative velocity correction per share of the area that the stem
+# fills. ISO 3966 clause 12 (corrections), value from memory.
+STEM_BLOCKAGE = 0.7
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Treated:
+    """Readings after the stated rules. Arrays have shape (points,).
+
+    ``differential_pressure`` [Pa] is finite everywhere (0 where a point does not count); ``weight`` is the weight used
+    and sums to 1; ``rule`` says per point what acted, empty where the reading was taken as it stands.
+    """
+
+    differential_pressure: Array
+    weight: Array
+    counted: Flags
+    rule: tuple[str, ...]
+
+
+def treat(readings: Readings, layout: Layout, policies: Policies, negative: str | None = None) -> Treated:
+    """Apply the rules for unread, below-range and negative readings.
+
+    Parameters
+    ----------
+    readings, layout, policies
+        The run's readings, the points they belong to, and the job's rules.
+    negative : str, optional
+        Overrides the job's rule for negative readings (``zero``, ``signed``, ``omit``).
+
+    Raises
+    ------
+    ReadingError
+        If a point is unread and the job says that is an error, or if no point is left.
+    """
+    status = np.array(readings.status)
+    pressure = np.array(readings.differential_pressure)
+    counted = np.ones(len(status), dtype=bool)
+    rule = [""] * len(status)
+    for index in np.flatnonzero(status == "below range"):
+        share = {"half": 0.5, "zero": 0.0, "limit": 1.0}[policies.below]
+        pressure[index] *= share
+        rule[index] = {"half": "half the limit", "zero": "zero", "limit": "the limit"}[policies.below]
+    unread = np.isin(status, list(UNREAD)) | ~np.isfinite(pressure)
+    if unread.any():
+        _unread(readings, layout, policies, unread, pressure, counted, rule)
+    choice = negative or ("zero" if policies.negative == "method" else policies.negative)
+    below_zero = counted & (pressure < 0)
+    for index in np.flatnonzero(below_zero):
+        rule[index] = {"zero": "counted as zero", "signed": "root with its sign", "omit": "left out"}[choice]
+    if choice == "omit":
+        counted &= ~below_zero
+    weight = np.where(counted, layout.weight, 0.0)
+    if not weight.sum() > 0:
+        raise ReadingError("no point is left to average", where="readings", expected="at least one usable reading")
+    pressure = np.where(counted, pressure, 0.0)
+    return Treated(
+        differential_pressure=frozen(pressure), weight=frozen(weight / weight.sum()), counted=counted, rule=tuple(rule)
+    )
+
+
+def _unread(
+    readings: Readings, layout: Layout, policies: Policies, unread: Flags, pressure: Array, counted: Flags, rule: list[str]
+) -> None:
+    """Fill or drop the points that gave no usable number, in place."""
+    labels = [f"{readings.line[i]}{readings.point[i]} ({readings.status[i]})" for i in np.flatnonzero(unread)]
+    if policies.missing == "error":
+        raise ReadingError(
+            f"no usable reading at {', '.join(labels)}", where="readings", expected="a reading at every point of the plan",
+            how='or say what to do: [readings] missing = "neighbour" or "omit"',
+        )
+    if policies.missing == "omit":
+        counted[unread] = False
+        for index in np.flatnonzero(unread):
+            rule[index] = "left out, weights of the others raised"
+        return
+    root = np.sign(pressure) * np.sqrt(np.abs(pressure))
+    for index in np.flatnonzero(unread):
+        pressure[index], names = _neighbours(index, readings, layout, unread, root)
+        rule[index] = f"from {names}"
+
+
+def _neighbours(
+    index: int, readings: Readings, layout: Layout, unread: Flags, root: Array
+) -> tuple[float, str]:
+    """Return the pressure whose root is the mean of the roots read next to a point on its line."""
+    same = np.array([line == layout.line[index] for line in layout.line]) & ~unread
+    before = np.flatnonzero(same & (layout.depth < layout.depth[index]))
+    after = np.flatnonzero(same & (layout.depth > layout.depth[index]))
+    chosen = [int(before[np.argmax(layout.depth[before])])] if before.size else []
+    chosen += [int(after[np.argmin(layout.depth[after])])] if after.size else []
+    if not chosen:
+        raise ReadingError(
+            f"no usable reading on line {readings.line[index]}", where="readings",
+            expected="a neighbour on the same line to take the missing point from", how='or set [readings] missing = "omit"',
+        )
+    mean = float(np.mean(root[chosen]))
+    names = " and ".join(f"{readings.line[i]}{readings.point[i]}" for i in chosen)
+    return mean * abs(mean), names
+
+
+def setting(job: Job, run: Run, method: Method, *, signed: bool = False) -> Setting:
+    """Return which equations the chain uses for this run under this method."""
+    gas = run.gas
+    density = ""
+    if gas.density is not None:
+        density = "at conditions" if gas.density_temperature is not None else "at plane"
+    return Setting(
+        shape=job.plane.section.shape, gas_kind=gas.kind, humidity=gas.humidity,
+        density_given=density,  # type: ignore[arg-type]
+        ratio_of_specific_heats=gas.ratio_of_specific_heats, arithmetic=method.arithmetic,
+        compressible=method.compressible, signed=signed, constants=method.constants.get(job.units),
+        reference=_reference(job.reference), dimensions=tuple(job.plane.section.dimensions),
+    )
+
+
+def _reference(reference: Reference | None) -> tuple[str, float, float] | None:
+    if reference is None:
+        return None
+    if reference.density is not None:
+        return ("density", reference.density.value, 0.0)
+    assert reference.temperature is not None and reference.pressure is not None, "checked when the job was read"
+    return ("conditions", reference.temperature.value, reference.pressure.value)
+
+
+def inputs(job: Job, run: Run, method: Method, treated: Treated) -> dict[str, Array]:
+    """Return the chain's inputs for one run, each of shape (points,) or (1,)."""
+    gas, readings = run.gas, run.readings
+
+    def one(value: float | None) -> Array:
+        return np.array([np.nan if value is None else value])
+
+    values = {
+        "differential_pressure": treated.differential_pressure,
+        "root_shift": one(0.0),
+        "temperature": readings.temperature,
+        "static": readings.static,
+        "barometric": one(run.conditions.barometric.value),
+        "yaw": readings.yaw if method.uses_yaw else np.zeros_like(readings.yaw),
+        "weight": treated.weight,
+        "coefficient": one(run.pitot.coefficient),
+        "water": one(gas.water.value if gas.water else 0.0),
+        "moisture_shift": one(0.0),
+        "density": one(gas.density.value if gas.density else None),
+        "density_temperature": one(gas.density_temperature.value if gas.density_temperature else None),
+        "density_pressure": one(gas.density_pressure.value if gas.density_pressure else None),
+        "molar_mass": one(gas.molar_mass.value if gas.molar_mass else None),
+        "point_factor": point_factor(job.corrections, run, job.layout, job.plane.section.area),
+        "wall_factor": one(job.corrections.wall_factor if job.corrections.wall_factor is not None else 1.0),
+        "profile_factor": one(1.0),
+    }
+    values |= {name: one(gas.fraction(name)) for name in COMPONENTS}
+    values |= {name: one(stated.value) for name, stated in job.plane.section.dimensions.items()}
+    return values
+
+
+def point_factor(corrections: Corrections, run: Run, layout: Layout, area: float) -> Array:
+    """Return the factor on each point's velocity from the corrections that were asked for, shape (points,)."""
+    factor = np.ones(layout.size)
+    if corrections.turbulence is not None:
+        factor /= np.sqrt(1.0 + corrections.turbulence.value**2)
+    if corrections.blockage and run.pitot.stem is not None:
+        factor *= 1.0 - STEM_BLOCKAGE * run.pitot.stem.value * layout.depth / area
+    return frozen(factor)
+
+
+def refuse_impossible(quantities: dict[str, Array], run: Run) -> None:
+    """Raise where the chain found the inputs impossible, naming the input that is.
+
+    Raises
+    ------
+    DomainError
+        For water above saturation, a wet bulb above the dry bulb, and any result that is not a number.
+    """
+    gas = run.gas
+    if gas.humidity != "none" and not np.isfinite(quantities["moisture"]):
+        stated = gas.water.text if gas.water else "saturated gas"
+        raise DomainError(
+            f"{gas.humidity.replace('_', ' ')} of {stated} is not possible at "
+            f"{float(quantities['temperature']) - 273.15:.1f} degC and {float(quantities['absolute_pressure']):.0f} Pa",
+            where=f"run {run.name}, [gas] {gas.humidity}", expected="no more water than saturation holds",
+        )
+    for name in ("density", "mean_velocity", "actual_flow"):
+        if not np.isfinite(quantities[name]):
+            raise DomainError(
+                f"{name.replace('_', ' ')} cannot be computed", where=f"run {run.name}",
+                expected="pressures, temperatures and a composition that can exist together",
+            )

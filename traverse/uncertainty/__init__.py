@@ -1,0 +1,1 @@
+"""Measurement uncertainty: what is uncertain, and how it reaches the result."""
