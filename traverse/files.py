@@ -6,7 +6,7 @@ import hashlib
 import os
 import tempfile
 from collections.abc import Iterable, Iterator
-from contextlib import contextmanager
+from contextlib import contextmanager, suppress
 from pathlib import Path
 from typing import IO
 
@@ -32,35 +32,50 @@ def read_bytes(path: Path) -> bytes:
     try:
         if path.is_dir():
             raise ReadingError("is a folder", where=str(path), expected="a file")
-        size = path.stat().st_size
-        if size > LARGEST:
-            raise ReadingError(f"{size / 1e6:.0f} MB", where=str(path), expected=f"at most {LARGEST // 10**6} MB")
-        return path.read_bytes()
+        with path.open("rb") as stream:
+            # Never more than the limit: a device or a growing file states no size that could be trusted.
+            content = stream.read(LARGEST + 1)
     except FileNotFoundError as problem:
         raise ReadingError("no such file", where=str(path), expected="a file that exists") from problem
     except (OSError, ValueError) as problem:
         reason = getattr(problem, "strerror", None) or str(problem)
         raise ReadingError(f"cannot be read ({reason})", where=str(path)) from problem
+    if len(content) > LARGEST:
+        raise ReadingError("is too large", where=str(path), expected=f"at most {LARGEST // 10**6} MB")
+    return content
 
 
 def decode(content: bytes, where: str) -> tuple[str, str, str]:
     """Return text, encoding and a note: byte-order mark first, then strict UTF-8, then the Western 8-bit code page.
 
-    The note is empty unless the encoding had to be guessed.
+    The note is empty unless the encoding had to be guessed; it counts the bytes which the guess gives no character.
+
+    Raises
+    ------
+    ReadingError
+        If the bytes are no text: damaged after a byte-order mark, or with zero characters in them.
     """
     for mark, encoding in ((b"\xef\xbb\xbf", "utf-8-sig"), (b"\xff\xfe", "utf-16"), (b"\xfe\xff", "utf-16")):
         if content.startswith(mark):
             try:
-                return content.decode(encoding), encoding, ""
+                return _without_zeros(content.decode(encoding), where), encoding, ""
             except UnicodeDecodeError as problem:
                 raise ReadingError(f"damaged {encoding} text at byte {problem.start}", where=where) from problem
-    if b"\x00" in content[:4096]:
-        raise ReadingError("binary data", where=where, expected="text: UTF-8, UTF-16 with its mark, or a Western 8-bit code")
     try:
-        return content.decode("utf-8"), "utf-8", ""
+        return _without_zeros(content.decode("utf-8"), where), "utf-8", ""
     except UnicodeDecodeError:
-        note = "not UTF-8; read as the Western 8-bit code page 1252"
-        return content.decode("cp1252", errors="replace"), "cp1252", note
+        text = _without_zeros(content.decode("cp1252", errors="replace"), where)
+    note = "not UTF-8; read as the Western 8-bit code page 1252"
+    if lost := text.count("\ufffd"):
+        note += f", in which {lost} of its bytes mean nothing (shown as \ufffd)"
+    return text, "cp1252", note
+
+
+def _without_zeros(text: str, where: str) -> str:
+    """Return the text; a zero character stands in no text file, only in binary data and in unmarked UTF-16 or UTF-32."""
+    if "\x00" in text:
+        raise ReadingError("binary data", where=where, expected="text: UTF-8, UTF-16 with its mark, or a Western 8-bit code")
+    return text
 
 
 def read_text(path: Path) -> tuple[str, str, str]:
@@ -76,21 +91,33 @@ def claim(target: Path, inputs: Iterable[Path], *, force: bool) -> None:
     OutputError
         If the folder is missing or closed, the target is an input, a folder, or exists and ``force`` is not given.
     """
-    folder = target.parent if str(target.parent) else Path()
+    try:
+        _examine(target, inputs, force=force)
+    except OSError as problem:
+        raise _refused(target, problem) from problem
+
+
+def _examine(target: Path, inputs: Iterable[Path], *, force: bool) -> None:
+    """Do the work of :func:`claim`; what the file system itself refuses leaves as OSError."""
+    folder = target.parent
     if not folder.is_dir():
         raise OutputError(f"the folder {folder} does not exist", where=str(target), how="make it first, or name another")
     if target.is_dir():
         raise OutputError("is a folder", where=str(target), expected="the name of a file")
+    exists = target.exists()
     for source in inputs:
-        if target.exists() and source.exists() and target.samefile(source):
-            raise OutputError("is an input of this job", where=str(target), expected="another name; an input is never overwritten")
+        if exists and source.exists() and target.samefile(source):
+            raise OutputError(
+                "is an input of this job", where=str(target), expected="another name; an input is never overwritten"
+            )
+    if exists and not target.is_file():
+        raise OutputError("is no ordinary file", where=str(target), expected="the name of a file")
     if not os.access(folder, os.W_OK):
         raise OutputError(f"the folder {folder} cannot be written to", where=str(target), how="choose another folder")
-    if target.exists():
-        if not force:
-            raise OutputError("exists already", where=str(target), how="choose another name, or overwrite it with --force")
-        if not os.access(target, os.W_OK):
-            raise OutputError("is read-only", where=str(target), how="choose another name")
+    if exists and not force:
+        raise OutputError("exists already", where=str(target), how="choose another name, or overwrite it with --force")
+    if exists and not os.access(target, os.W_OK):
+        raise OutputError("is read-only", where=str(target), how="choose another name")
 
 
 @contextmanager
@@ -102,24 +129,38 @@ def atomic(target: Path) -> Iterator[IO[bytes]]:
     OutputError
         If the folder or the target cannot be written to, or another program holds the target open.
     """
-    name = ""
     try:
-        handle, name = tempfile.mkstemp(dir=target.parent, prefix=f".{target.name}.", suffix=".part")
+        # Through a link to the file it stands for, as every program writes.
+        place = target.resolve()
+        if place.exists() and not place.is_file():
+            raise OutputError("is no ordinary file", where=str(target), expected="the name of a file")
+        handle, name = tempfile.mkstemp(dir=place.parent, prefix=".traverse.", suffix=".part")
+    except OSError as problem:
+        raise _refused(target, problem) from problem
+    part = Path(name)
+    try:
         with os.fdopen(handle, "wb") as stream:
             yield stream
             stream.flush()
             os.fsync(stream.fileno())
-        Path(name).chmod(target.stat().st_mode & 0o777 if target.exists() else 0o666 & ~_umask())
-        Path(name).replace(target)
-        name = ""
+        # Some file systems keep no modes; that is no reason to give up the result.
+        with suppress(PermissionError, NotImplementedError):
+            part.chmod(place.stat().st_mode & 0o777 if place.exists() else 0o666 & ~_umask())
+        part.replace(place)
     except OSError as problem:
-        raise OutputError(
-            f"cannot be written ({problem.strerror})", where=str(target),
-            how="close it in other programs, or choose another name or folder",
-        ) from problem
+        if problem.filename not in {None, name}:
+            # The caller's own trouble with another file, not ours with this one.
+            raise
+        raise _refused(target, problem) from problem
     finally:
-        if name:
-            Path(name).unlink(missing_ok=True)
+        part.unlink(missing_ok=True)
+
+
+def _refused(target: Path, problem: OSError) -> OutputError:
+    return OutputError(
+        f"cannot be written ({problem.strerror or problem})", where=str(target),
+        how="close it in other programs, or choose another name or folder",
+    )
 
 
 def _umask() -> int:

@@ -20,8 +20,6 @@ from traverse.uncertainty import directions, propagation
 from traverse.uncertainty.runs import of_mean
 from traverse.units import parse
 
-# Quantities whose budgets are reported line by line.
-BUDGETS = ("mean_velocity", "actual_flow", "standard_flow", "dry_standard_flow", "mass_flow")
 # Quantities of the other treatments and of the exact physics that stand beside the result.
 BESIDE = ("mean_velocity", "actual_flow", "standard_flow", "dry_standard_flow", "mass_flow")
 
@@ -95,7 +93,7 @@ def _run(job: Job, run: Run, method: Method) -> RunResult:
     result = RunResult(
         run=run, quantities=quantities, notes=notes, treated=treated, velocity=_point(flow.points["velocity"], job),
         density=_point(flow.points["density"], job),
-        budget={name: propagation.budget(rows, moved, name) for name in BUDGETS if name in flow.quantities and rows},
+        budget={name: propagation.budget(rows, moved, name) for name in flow.quantities} if rows else {},
         checks=(), treatments=treatments, exact=_exact(job, run, method, treated, signed), findings=treatment_findings,
     )
     return replace(result, checks=checks.over_run(job, method, result))

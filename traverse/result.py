@@ -12,6 +12,9 @@ from traverse.model import NULL, Array, Finding, Job, Run
 from traverse.quantities import BY_NAME, NAMES
 from traverse.treatment import Treated
 
+# Quantities whose budgets are reported line by line.
+BUDGETS = ("mean_velocity", "actual_flow", "standard_flow", "dry_standard_flow", "mass_flow")
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Measured:
@@ -194,7 +197,7 @@ class Reduction:
             "run": result.run.name,
             "quantities": {name: m.to_dict() if m else None for name, m in result.quantities.items()},
             "notes": dict(result.notes),
-            "budget": {name: [row.to_dict() for row in rows] for name, rows in result.budget.items()},
+            "budget": {name: [row.to_dict() for row in result.budget[name]] for name in BUDGETS if result.budget.get(name)},
             "points": _points(self.job, result),
             "checks": [check.to_dict() for check in result.checks],
             "negative_treatments": {rule: dict(values) for rule, values in result.treatments.items()},

@@ -65,7 +65,8 @@ def _job_file(path: str | Path) -> Path:
     place = Path(path)
     if place.suffix.lower() in _WORKBOOKS:
         raise JobError(
-            "field workbooks are not available in this version", where=place.name, expected="a job file (TOML) with readings as CSV"
+            "field workbooks are not available in this version", where=place.name,
+            expected="a job file (TOML) with readings as CSV",
         )
     if not place.is_file():
         raise JobError("a folder" if place.is_dir() else "no such file", where=str(path), expected="a job file (TOML)")

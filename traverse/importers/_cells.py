@@ -5,7 +5,6 @@ from __future__ import annotations
 import math
 import re
 from dataclasses import dataclass
-from typing import cast
 
 from traverse.errors import ReadingError, nearest
 from traverse.importers._text import number
@@ -100,7 +99,9 @@ def combine(cell: Cell, word: str, reason: str, where: str) -> Cell:
         return Cell(cell.number, cell.status, reason or cell.reason) if cell.status != "read" else cell
     blank = math.isnan(cell.number)
     if status in {"read", "negative", "below range"} and blank:
-        raise ReadingError(f'status "{status}" beside a reading without a number', where=where, expected="a number, or another status")
+        raise ReadingError(
+            f'status "{status}" beside a reading without a number', where=where, expected="a number, or another status"
+        )
     if status == "negative" and cell.number >= 0:
         raise ReadingError(f'status "negative" beside {cell.number:g}', where=where, expected="the reading with its sign")
     if status == "missing" and not blank:
@@ -116,10 +117,9 @@ def _status(word: str, where: str) -> Status | None:
     folded = word.strip().lower()
     if folded in {"", "-", "ok", "good", "valid"}:
         return None
-    if folded in STATUSES:
-        return cast("Status", folded)
-    if folded.replace("_", " ") in STATUSES:
-        return cast("Status", folded.replace("_", " "))
+    for status in STATUSES:
+        if folded.replace("_", " ") == status:
+            return status
     if folded in _WORDS:
         return _WORDS[folded]
     guess = nearest(folded, STATUSES)

@@ -45,6 +45,8 @@ _SYNONYMS: dict[str, str] = {
 }
 # Columns that `split` writes beside the canonical ones; known, and of no use to a reduction.
 KNOWN_EXTRA = frozenset({"start", "end", "samples", "effectivesamples", "standarddeviation", "confidence"})
+# Spellings that also head a counter of rows or the like: they give way to a plainer name of the same column.
+_WEAK = frozenset({"no", "nr", "#", "num", "pos", "position", "row", "repeat", "distance", "code", "note", "notes"})
 READING = frozenset({"differential_pressure", "velocity", "total"})
 # Columns whose unit must be told: a wrong guess is a wrong flow that looks right.
 NEED_UNIT = frozenset({"differential_pressure", "total", "temperature", "static", "velocity", "depth", "x", "y",
@@ -60,6 +62,7 @@ class Head:
     name: str
     text: str
     unit: str = ""
+    weak: bool = False
 
 
 def fold(text: str) -> str:
@@ -83,7 +86,7 @@ def recognise(place: int, text: str) -> Head | None:
     """Return what a head says, None where it is no known column.
 
     >>> recognise(0, "ΔP [in. w.c.]")
-    Head(place=0, name='differential_pressure', text='ΔP [in. w.c.]', unit='in. w.c.')
+    Head(place=0, name='differential_pressure', text='ΔP [in. w.c.]', unit='in. w.c.', weak=False)
     """
     for name, unit in _splits(text):
         folded = fold(name)
@@ -91,18 +94,24 @@ def recognise(place: int, text: str) -> Head | None:
             # Pt is a total pressure with a unit of pressure and the abbreviation of 'point' without one.
             return Head(place, "total" if unit else "point", text, unit)
         found = _known().get(folded)
+        if folded in {"pos", "position"} and unit:
+            found = "depth"
         if found is None or not _fits(found, unit, name):
             continue
-        return Head(place, found, text, unit)
+        return Head(place, found, text, unit, folded in _WEAK)
     return None
 
 
 def _fits(canonical: str, unit: str, name: str) -> bool:
-    """Refuse a one- or two-letter head whose unit is of another kind, such as a time ``t [s]``."""
+    """Refuse a head whose unit makes it something else, such as a time ``t [s]`` or ``Ts [s]``."""
     dimension, found = COLUMNS[canonical], lookup(unit) if unit else None
     if dimension == "number" and found is not None and found.symbol == "%":
         return True
-    return not (len(name.strip()) <= 2 and found is not None and found.dimension != dimension)
+    if not dimension:
+        return not unit
+    if found is None or found.dimension == dimension:
+        return True
+    return found.dimension != "time" and len(name.strip()) > 1
 
 
 def _splits(text: str) -> Iterator[tuple[str, str]]:

@@ -77,7 +77,8 @@ def _toml(path: Path, text: str) -> dict[str, Any]:
         line = int(place.group(1)) if place else text.count("\n") + 1
         said = re.sub(r"\s*\(at .*\)\s*\Z", "", str(problem))
         raise JobError(
-            f"no valid TOML: {said[0].lower()}{said[1:]}", where=f"{path.name}:{line}", expected='lines such as diameter = "60 in"'
+            f"no valid TOML: {said[0].lower()}{said[1:]}", where=f"{path.name}:{line}",
+            expected='lines such as diameter = "60 in"'
         ) from problem
     except (ValueError, RecursionError) as problem:
         raise JobError(f"no valid TOML: {problem}", where=path.name, expected='lines such as diameter = "60 in"') from problem
@@ -136,9 +137,7 @@ def _overrides(entries: Any) -> tuple[Override, ...]:
         for key, kind in SCHEMA[table].items():
             if key not in keys:
                 keys[key], home[key] = kind, table
-    found: list[Override] = []
-    for entry in entries:
-        found.append(_override(entry, keys, home))
+    found = [_override(entry, keys, home) for entry in entries]
     names = [override.name for override in found]
     for name in names:
         if names.count(name) > 1:

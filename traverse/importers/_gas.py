@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import replace
 from typing import Literal, cast
 
@@ -62,10 +61,9 @@ def build(table: Table) -> tuple[Gas, tuple[Finding, ...]]:
             f"a ratio of {ratio:g}", where=table.where("ratio_of_specific_heats"), expected="a number between 1 and 1.667"
         )
     gas = Gas(kind=kind, humidity=humidity, water=water, ratio_of_specific_heats=ratio)
-    dress: Callable[[Table, Gas], tuple[Gas, tuple[Finding, ...]]] = {
-        "air": lambda table, gas: (gas, ()), "flue-gas": _flue_gas, "given": _given,
-    }[kind]
-    return dress(table, gas)
+    if kind == "air":
+        return gas, ()
+    return _flue_gas(table, gas) if kind == "flue-gas" else _given(table, gas)
 
 
 def _humidity(table: Table, kind: Kind) -> tuple[Humidity, Stated | None]:

@@ -19,7 +19,7 @@ from traverse.units import Unit, lookup, unit
 
 NUMERIC = frozenset(name for name, dimension in COLUMNS.items() if dimension)
 _STATISTICS = re.compile(
-    r"(total|sum|average|avg|mean|min|minimum|max|maximum|std\.?|st\.? ?dev\.?|standard deviation|summe|mittel|mittelwert|"
+    r"(total|sum|average|avg|mean|min|minimum|max|maximum|std\.?(?:\s*dev\.?)?|st\.?\s*dev\.?|standard deviation|summe|mittel|mittelwert|"
     r"durchschnitt|gesamt|somme|moyenne|suma|promedio|media)s?"
 )
 _FILLER = r"(run|line|port|point|points|value|values|of|all|test|traverse|readings?|lines|ports|[a-z]|\d+)"
@@ -92,7 +92,7 @@ def read(path: Path, name: str, told: Told, needed: frozenset[str] = READING) ->
     delimiter, rows, place = _layout(text, name, told, needed)
     header = rows[place]
     heads, ignored = _heads(header, name, told)
-    findings += _said(name, header, delimiter, place, ignored, rows)
+    findings += _said(name, header, delimiter, place, ignored)
     data, unit_row = _data(rows, place, heads, name, findings)
     units = _units(header, heads, unit_row, name, told, findings)
     decimal = _decimal(data, heads, delimiter, name, told, findings)
@@ -169,9 +169,14 @@ def _heads(header: Row, name: str, told: Told) -> tuple[dict[str, Head], list[st
             if fold(text) not in KNOWN_EXTRA:
                 ignored.append(text)
             continue
-        if guess.name in found:
+        other = found.get(guess.name)
+        if other is not None and other.weak != guess.weak:
+            ignored.append(other.text if other.weak else text)
+            found[guess.name] = guess if other.weak else other
+            continue
+        if other is not None:
             raise ReadingError(
-                f'columns "{found[guess.name].text}" and "{text}" could both be {guess.name}', where=f"{name}:{header.line}",
+                f'columns "{other.text}" and "{text}" could both be {guess.name}', where=f"{name}:{header.line}",
                 expected="one of them", how=f'say which: [readings.columns] {guess.name} = "{text}"',
             )
         found[guess.name] = guess
@@ -204,9 +209,7 @@ def _without_unit(cell: str) -> tuple[str, str]:
     return cell, ""
 
 
-def _said(
-    name: str, header: Row, delimiter: str, place: int, ignored: Sequence[str], rows: Sequence[Row]
-) -> Iterator[Finding]:
+def _said(name: str, header: Row, delimiter: str, place: int, ignored: Sequence[str]) -> Iterator[Finding]:
     """Yield what was found out about the shape of the file."""
     shown = {"\t": "tab", ";": "semicolon", ",": "comma", "|": "bar"}[delimiter]
     junk = f"; {place} rows above it left out" if place else ""
@@ -298,7 +301,8 @@ def _units(
             "head": head.unit, "units row": "" if _cells.is_blank(below) else _bare(below),
             "[readings.units]": told.units.get(canonical, ""),
         }
-        found[canonical] = _unit(canonical, head, {key: text for key, text in stated.items() if text}, f"{name}:{header.line}", findings)
+        said = {key: text for key, text in stated.items() if text}
+        found[canonical] = _unit(canonical, head, said, f"{name}:{header.line}", findings)
     return found
 
 
@@ -351,7 +355,7 @@ def _decimal(
                 tokens.append(Token(bare, f'{name}:{row.line} column "{numeric[place].text}"'))
             else:
                 others.append(bare)
-    sign, how = _text.decimal_sign(tokens, others, delimiter, name)
+    sign, how = _text.decimal_sign(tokens, others, delimiter)
     if how:
         findings.append(Finding(level="note", topic="decimal sign", message=how, where=name, setting="[readings] decimal"))
     return sign

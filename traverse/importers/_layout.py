@@ -188,7 +188,9 @@ def _listed(table: Table) -> Points:
     for place, entry in enumerate(entries, 1):
         where = f"{table.where('points')}[{place}]"
         if not isinstance(entry, dict):
-            raise JobError(f"{entry!r}", where=where, expected='a table such as {line = "A", point = 1, depth = "31 mm", weight = 0.1}')
+            raise JobError(
+                f"{entry!r}", where=where, expected='a table such as {line = "A", point = 1, depth = "31 mm", weight = 0.1}'
+            )
         _one(found, entry, where)
     if not entries:
         raise LayoutError("no points", where=table.where("points"), expected="at least one point")

@@ -29,7 +29,7 @@ class Matched:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Plan:
-    """The plan and how readings without point numbers run through it. ``length`` is that of a line. [m]"""
+    """The plan and how readings without point numbers run through it. ``length`` [m] is that of a line."""
 
     layout: Layout
     length: float
@@ -179,7 +179,8 @@ def _renumbered(
                 numbers = [number - before for number in numbers]
                 moved = True
             if max(numbers) > count:
-                raise _count_error(run, records, plan, f"line {group.label or group.line}: point {max(numbers)} on a line of {count}")
+                detail = f"line {group.label or group.line}: point {max(numbers)} on a line of {count}"
+                raise _count_error(run, records, plan, detail)
             found[id(group)] = numbers
         offset += count
     if moved:
@@ -264,15 +265,16 @@ def _check_depths(
         if abs(off) > max(gap / 2.0, 1e-6):
             record = group.records[place]
             raise ReadingError(
-                f"depth {record.text.get('depth', '')!r} lies {abs(off) * 1000:.1f} mm from the planned {planned[rank] * 1000:.1f} mm",
-                where=record.where, expected="depths from the inner wall, within half a spacing of the plan's",
+                f"depth {record.text.get('depth', '')!r} lies {abs(off) * 1000:.1f} mm from the planned "
+                f"{planned[rank] * 1000:.1f} mm", where=record.where,
+                expected="depths from the inner wall, within half a spacing of the plan's",
                 how='if the points were placed otherwise, give them: [layout] rule = "custom"',
             )
     if abs(departure[worst]) > tolerance:
         findings.append(Finding(
             level="attention", topic="depths", where=group.records[worst].where, setting="[layout]",
-            message=f"depths depart from the plan by up to {abs(departure[worst]) * 1000:.1f} mm (allowed {tolerance * 1000:.1f} mm), "
-            f"run {run}",
+            message=f"depths of run {run} depart from the plan by up to {abs(departure[worst]) * 1000:.1f} mm "
+            f"(allowed {tolerance * 1000:.1f} mm)",
         ))
 
 

@@ -76,7 +76,7 @@ def units_system(table: Table, section: Section) -> tuple[Literal["si", "us"], t
     system: Literal["si", "us"] = "us" if inches else "si"
     return system, (Finding(
         level="note", topic="units", setting="[job] units",
-        message=f'units is not stated; "{system}" because the section is given in {"inches or feet" if inches else "metric units"}.',
+        message=f'units is not stated; "{system}" because the section is in {"inches or feet" if inches else "metric units"}.',
     ),)
 
 
@@ -198,7 +198,9 @@ def reference(table: Table) -> Reference | None:
         return None
     temperature, pressure, density = table.stated("temperature"), table.stated("pressure"), table.stated("density")
     if density is not None and (temperature is not None or pressure is not None):
-        raise JobError("density beside temperature or pressure", where=table.name, expected="temperature and pressure, or density")
+        raise JobError(
+            "density beside temperature or pressure", where=table.name, expected="temperature and pressure, or density"
+        )
     if density is None and (temperature is None or pressure is None):
         lacking = "temperature" if temperature is None else "pressure"
         raise JobError(f"no {lacking}", where=table.name, expected="both temperature and pressure, or density")

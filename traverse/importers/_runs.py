@@ -100,7 +100,7 @@ def _run(
     filling = Filling(name, table, matched, {record.where: place for place, record in enumerate(records)})
     filling.findings += [*gas_findings, *pitot_findings, *state_findings, *matched.findings]
     for column in sorted(recorded & set(over["conditions"].values)) if "conditions" in over else ():
-        filling.note(column, f"{column} of [[run]] is not used: the column of the readings counts", f"[readings.columns] {column}")
+        filling.note(column, f"{column} of [[run]] is not used: the readings' column counts", f"[readings.columns] {column}")
     return Run(
         name=name, conditions=conditions, gas=gas, pitot=pitot, readings=_readings(filling, conditions, meter_density)
     ), filling.findings
@@ -143,7 +143,8 @@ def _columns(filling: Filling) -> dict[str, Column]:
         records = filling.matched.records
         number = np.array([r.number.get(name, math.nan) if r is not None else math.nan for r in records])
         text = tuple(r.text.get(name, "") if r is not None else "" for r in records)
-        if name not in {"differential_pressure", "velocity"} and not np.isfinite(number).any() and (COLUMNS[name] or not any(text)):
+        empty = not np.isfinite(number).any() if COLUMNS[name] else not any(text)
+        if empty and name not in {"differential_pressure", "velocity"}:
             continue
         found[name] = Column(
             name=name, header=head.text, unit=head.unit, number=number, text=text,
@@ -181,8 +182,8 @@ def _carried(filling: Filling, values: Array) -> Array:
     if np.isfinite(carried).sum() == np.isfinite(values).sum():
         return values
     filling.note(
-        "temperature", "the temperature at the head of each line was taken for the rest of the line", "[readings.columns] temperature",
-        attention=True,
+        "temperature", "the temperature at the head of each line was taken for the rest of the line",
+        "[readings.columns] temperature", attention=True,
     )
     return carried
 
@@ -214,7 +215,8 @@ def _filled(filling: Filling, name: str, values: Array, default: Stated | None) 
         )
     # The remaining blanks belong to points that were not read: the mean of the others keeps the mean as it is.
     mean = float(np.mean(values[~blank]))
-    filling.note(name, f"blank {name} at {filling.labels(blank)}, not read, taken as the mean of the others", f"[conditions] {name}")
+    message = f"blank {name} at {filling.labels(blank)}, not read, taken as the mean of the others"
+    filling.note(name, message, f"[conditions] {name}")
     return np.where(blank, mean, values)
 
 

@@ -20,8 +20,8 @@ _PLAIN = {
     ".": re.compile(r"(?:\d+\.?\d*|\.\d+)\Z"), ",": re.compile(r"(?:\d+,?\d*|,\d+)\Z"),
 }
 _GROUPED = {
-    ".": re.compile(rf"\d{{1,3}}(?:([,{_GROUP}])\d{{3}})(?:\1\d{{3}})*(?:\.\d*)?\Z"),
-    ",": re.compile(rf"\d{{1,3}}(?:([.{_GROUP}])\d{{3}})(?:\1\d{{3}})*(?:,\d*)?\Z"),
+    ".": re.compile(rf"[1-9]\d{{0,2}}(?:([,{_GROUP}])\d{{3}})(?:\1\d{{3}})*(?:\.\d*)?\Z"),
+    ",": re.compile(rf"[1-9]\d{{0,2}}(?:([.{_GROUP}])\d{{3}})(?:\1\d{{3}})*(?:,\d*)?\Z"),
 }
 
 
@@ -73,11 +73,11 @@ def is_number(text: str) -> bool:
 
 
 def number(text: str, decimal: str) -> float | None:
-    """Return the number a cell holds, None where it is none with that decimal sign.
+    r"""Return the number a cell holds, None where it is none with that decimal sign.
 
     Minus may be U+2212 or an en dash; digits may be grouped by threes with spaces, apostrophes or the other sign.
 
-    >>> number("\\u22121'013,25", ",")
+    >>> number("\u22121'013,25", ",")
     -1013.25
     >>> number("12,5", ".") is None
     True
@@ -120,7 +120,7 @@ class Token:
 
 
 def decimal_sign(
-    tokens: Sequence[Token], others: Iterable[str], delimiter: str, name: str
+    tokens: Sequence[Token], others: Iterable[str], delimiter: str
 ) -> tuple[Decimal, str]:
     """Return the decimal sign of a file and how it was found out.
 

@@ -155,7 +155,7 @@ def _part(name: str, part: str, text: Any, where: str, *, shared: bool) -> Itera
         raise UnitError(f"{text!r}", where=where, expected=f'text such as "±1 %", "0.5 %" or "1 % (k=2)"{table}')
     found = terms(text, where)
     if part == "resolution":
-        if len(found) != 1 or found[0].distribution != "standard" or found[0].unit == "%" and _relative(name):
+        if len(found) != 1 or found[0].distribution != "standard" or (found[0].unit == "%" and _relative(name)):
             raise JobError(
                 f"{text!r}", where=where, expected="the full step of the display with its unit, without ± and k",
                 how='for example "0.1 Pa"; half of it is taken as limits',

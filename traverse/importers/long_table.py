@@ -98,11 +98,13 @@ def _pressure_way(grid: Grid, wanted: Wanted, findings: list[Finding]) -> str:
     heads = grid.heads
     beside = [name for name in ("total", "velocity") if name in heads]
     if "differential_pressure" in heads:
-        for name in beside:
-            findings.append(_note("readings", grid.name, "[readings.columns]", (
-                f'column "{heads[name].text}" is not used: the pressure in "{heads["differential_pressure"].text}" counts')))
+        counts = f'the pressure in "{heads["differential_pressure"].text}" counts'
+        findings += [
+            _note("readings", grid.name, "[readings.columns]", f'column "{heads[name].text}" is not used: {counts}')
+            for name in beside
+        ]
         if wanted.meter_density is not None:
-            findings.append(_note("readings", grid.name, "[readings] meter_density", "meter_density is not used: pressures were read"))
+            findings.append(_note("readings", grid.name, "[readings] meter_density", f"meter_density is not used: {counts}"))
         return "differential_pressure"
     if "total" in heads:
         if "static" not in heads:

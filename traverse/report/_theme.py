@@ -11,6 +11,7 @@ _STYLES: dict[str, tuple[str, str | None, bool, float, bool, str, bool]] = {
     "title": (INK, None, True, 15, False, "left", False),
     "subtitle": ("FF0B3C6F", None, True, 11.5, False, "left", False),
     "heading": (INK, BAND, True, 9.5, True, "left", True),
+    "heading right": (INK, BAND, True, 9.5, True, "right", True),
     "label": (INK, None, False, 9.5, False, "left", False),
     "text": (INK, None, False, 9.5, True, "left", False),
     "line": (INK, None, False, 9.5, False, "left", False),
@@ -19,13 +20,19 @@ _STYLES: dict[str, tuple[str, str | None, bool, float, bool, str, bool]] = {
     "result": (INK, "FFDDE8F3", True, 10, False, "right", False),
     "unit": ("FF5A6672", None, False, 9.5, False, "left", False),
     "note": ("FF5A6672", None, False, 9, False, "left", False),
+    "remark": ("FF3A4550", None, False, 9.5, True, "left", False),
+    "warning": ("FF7A4B00", "FFFDF1DA", False, 9.5, True, "left", False),
+    "caution": ("FF5A6672", None, False, 8.5, True, "left", False),
     "source": ("FF5A6672", None, False, 8.5, True, "left", False),
     "faint": ("FF7A858F", None, False, 9, False, "right", False),
+    "faint text": ("FF7A858F", None, False, 9, False, "left", False),
     "verbatim": (INK, None, False, 9, False, "left", False),
     "pass": ("FF1B5E3A", "FFE3F1E8", True, 9.5, False, "left", False),
     "fail": ("FF8C1C13", "FFFBE4E1", True, 9.5, True, "left", False),
     "attention": ("FF7A4B00", "FFFDF1DA", True, 9.5, True, "left", False),
 }
+
+WRAPPED = frozenset(name for name, row in _STYLES.items() if row[4])
 
 
 def styles() -> dict[str, NamedStyle]:
@@ -34,7 +41,10 @@ def styles() -> dict[str, NamedStyle]:
     for name, (colour, fill, bold, size, wrapped, side, ruled) in _STYLES.items():
         style = NamedStyle(name=f"traverse {name}")
         style.font = Font(name="Consolas" if name == "verbatim" else FACE, size=size, bold=bold, color=colour)
-        style.alignment = Alignment(horizontal=side, vertical="top" if wrapped else "center", wrap_text=wrapped)
+        style.alignment = Alignment(
+            horizontal=side, vertical="top" if wrapped else "center", wrap_text=wrapped,
+            indent=1 if name in {"unit", "text", "faint text"} else 0,
+        )
         if fill:
             style.fill = PatternFill("solid", fgColor=fill)
         if ruled:

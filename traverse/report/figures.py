@@ -10,6 +10,7 @@ from matplotlib.axes import Axes
 from matplotlib.backends.backend_agg import FigureCanvasAgg
 from matplotlib.figure import Figure
 from matplotlib.patches import Circle, Patch, Rectangle
+from matplotlib.ticker import MaxNLocator
 
 from traverse import files
 from traverse.errors import OutputError
@@ -108,14 +109,15 @@ def section(result: Reduction) -> Figure:
     figure = _figure(1.2 + 5.0 * len(runs), max(3.4, min(5.0 * tall + 1.4, 9.0)))
     fields = [field(item, job.layout, job.plane.section) for item in runs]
     top = max(float(np.nanmax(values)) for _, _, values in fields) / speed.factor
-    levels = np.linspace(0.0, top if top > 0 else 1.0, 13)
+    levels = MaxNLocator(12, steps=[1, 2, 2.5, 5, 10]).tick_values(0.0, top if top > 0 else 1.0)
     axes = figure.subplots(1, len(runs), squeeze=False)[0]
     for one, item, (x, y, values) in zip(axes, runs, fields, strict=True):
-        drawn = one.contourf(x * scale, y * scale, values / speed.factor, levels=levels, cmap="cividis", extend="both")
+        drawn = one.contourf(x * scale, y * scale, values / speed.factor, levels=levels, cmap="cividis", extend="min")
         one.contour(x * scale, y * scale, values / speed.factor, levels=levels[::2], colors="white", linewidths=0.5)
         one.add_patch(outline(job.plane.section, scale))
         _mark_points(one, item, job.layout, scale, speed.factor)
         one.set_aspect("equal")
+        one.spines[:].set_visible(False)
         one.set_xlabel(f"x [{unit}]")
         one.set_title(f"run {item.run.name}: {_speed(item, job.units)}", fontsize=10)
     axes[0].set_ylabel(f"y [{unit}], looking downstream")
@@ -194,7 +196,7 @@ def budget(result: Reduction) -> Figure | None:
     axes = figure.subplots()
     bars = axes.barh(names, shares, color=[COLOURS[0] if row.shared else "#9fb8d3" for row in rows][::-1], edgecolor=INK,
                      linewidth=0.6, hatch=["" if row.shared else "///" for row in rows][::-1])
-    axes.bar_label(bars, labels=[f" {significant(share, 2)} %" for share in shares], fontsize=8)
+    axes.bar_label(bars, labels=[f" {significant(share, 2)} %" if share >= 0.1 else " < 0.1 %" for share in shares], fontsize=8)
     axes.set_xlabel("share of the variance [%]")
     axes.set_xlim(0, max(shares) * 1.15)
     _plain(axes)

@@ -6,14 +6,38 @@ filled in when all pages exist (:func:`resolve`), so that a page never counts ro
 
 from __future__ import annotations
 
+import math
 import re
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Literal
 
 _PLACEHOLDER = re.compile(r"«([^«»]+)»")
-# What spreadsheet programs take for a cell or a row/column and therefore refuse as a name.
-_NO_NAME = re.compile(r"\A(?:[A-Za-z]{1,3}\d+|[RrCc]|[Rr]\d*[Cc]\d*)\Z")
+# What spreadsheet programs take for a cell, a row, a column or a constant and therefore refuse as a name.
+_NO_NAME = re.compile(r"\A(?:[A-Za-z]{1,3}\d+|[RC]|R\d*C\d*|TRUE|FALSE)\Z", re.IGNORECASE)
+_NAME = re.compile(r"\A[A-Za-z_][A-Za-z0-9_.]{0,254}\Z")
+_QUOTED = re.compile(r'"[^"]*"')
+_CALL = re.compile(r"([A-Za-z_][A-Za-z0-9_.]*)\(")
+# What formulas may call: known to every spreadsheet program since 2007, the same in every language and on every day.
+# TEXT is not among them (its picture of a number is read in the user's language), nor is anything that changes by itself.
+FUNCTIONS = frozenset((
+    "ABS", "ACOS", "AND", "ASIN", "ATAN", "ATAN2", "AVERAGE", "COS", "COSH", "COUNT", "COUNTA", "COUNTIF", "DEGREES", "EXP", "IF",
+    "IFERROR", "INDEX", "INT", "ISNUMBER", "LEN", "LN", "LOG10", "MATCH", "MAX", "MIN", "MOD", "NORMSDIST", "NORMSINV", "NOT",
+    "OR", "PI", "POWER", "RADIANS", "ROUND", "ROUNDDOWN", "ROUNDUP", "SIGN", "SIN", "SINH", "SQRT", "STDEV", "SUM", "SUMIF",
+    "SUMPRODUCT", "SUMSQ", "TAN", "TANH", "TDIST", "TINV", "VAR",
+))
+# At most 31 characters, none that stands for something in a reference, no apostrophe at either end.
+_PAGE_TITLE = re.compile(r"\A(?!')[^\x00-\x1f\[\]:*?/\\]{1,31}(?<!')\Z")
+LONGEST = 32_767
+_BREAK = re.compile("\r\n?")
+# Control characters, lone surrogates and the two non-characters: no XML file can hold them.
+_UNWRITABLE = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\ud800-\udfff\ufffe\uffff]")
+
+
+def clean(text: str) -> str:
+    """Return text that a workbook can hold; what it cannot is replaced visibly, and more than a cell holds is cut visibly."""
+    text = _UNWRITABLE.sub("\ufffd", _BREAK.sub("\n", text))
+    return text if len(text) <= LONGEST else text[: LONGEST - 12] + " [cut here]"
 
 
 @dataclass(frozen=True, slots=True)
@@ -29,6 +53,12 @@ class Live:
 
     formula: str
     value: float | int | bool | str
+
+    def __post_init__(self) -> None:
+        assert self.formula.startswith("="), f"{self.formula!r} is no formula"
+        assert isinstance(self.value, str) or math.isfinite(self.value), f"{self.formula}: a value that is no number"
+        unknown = set(_CALL.findall(_QUOTED.sub("", _PLACEHOLDER.sub("", self.formula)))) - FUNCTIONS
+        assert not unknown, f"{self.formula}: not every spreadsheet program knows {', '.join(sorted(unknown))}"
 
 
 Content = Text | Live | float | int
@@ -122,12 +152,15 @@ class SheetSpec:
         ``span`` lets text run over that many columns.
         """
         assert (row, column) not in self.cells, f"{self.title}: cell {row}, {column} is put twice"
+        assert isinstance(content, Text | Live) or math.isfinite(content), f"{self.title}: cell {row}, {column} is no number"
         self.cells[row, column] = Cell(content=content, style=style, format=format, note=note)
         if key is not None:
             assert key not in self.keys, f"{self.title}: key {key!r} is put twice"
             self.keys[key] = (row, column)
         if name is not None:
-            assert not _NO_NAME.match(name), f"{name!r} cannot be a defined name"
+            assert _NAME.match(name), f"{name!r} cannot be a defined name"
+            assert not _NO_NAME.match(name), f"{name!r} as a defined name would be a cell or a constant"
+            assert name not in self.names, f"{self.title}: the name {name!r} is given twice"
             self.names[name] = (row, column)
         if span > 1:
             self.spans[row, column] = span
@@ -150,12 +183,30 @@ def column_letters(column: int) -> str:
     return letters
 
 
+def place(row: int, column: int) -> str:
+    """Return an absolute address."""
+    return f"${column_letters(column)}${row}"
+
+
+def quoted(title: str) -> str:
+    """Return a page's title as it stands before the exclamation mark of a reference."""
+    return "'" + title.replace("'", "''") + "'"
+
+
 class Addresses:
-    """Where every key of a workbook lies."""
+    """Where every key of a workbook lies, and what stands there.
+
+    A key or a defined name that stands twice, and a page that no program would accept, are mistakes of this program.
+    """
 
     def __init__(self, sheets: Sequence[SheetSpec]) -> None:
         self._places: dict[str, tuple[str, int, int]] = {}
+        self._pages = {sheet.title: sheet for sheet in sheets}
+        assert len({title.casefold() for title in self._pages}) == len(sheets), "two pages of one title"
+        names = [name.casefold() for sheet in sheets for name in sheet.names]
+        assert len(set(names)) == len(names), "a defined name stands on two pages"
         for sheet in sheets:
+            assert _PAGE_TITLE.match(sheet.title), f"{sheet.title!r} cannot be the title of a page"
             for key, (row, column) in sheet.keys.items():
                 assert key not in self._places, f"key {key!r} stands on two pages"
                 self._places[key] = (sheet.title, row, column)
@@ -163,15 +214,17 @@ class Addresses:
     def cell(self, key: str, page: str = "") -> str:
         """Return the address of a key, with the page's name unless it is on ``page``."""
         title, row, column = self._places[key]
-        absolute = f"${column_letters(column)}${row}"
-        return absolute if title == page else f"'{title}'!{absolute}"
+        return place(row, column) if title == page else f"{quoted(title)}!{place(row, column)}"
 
     def span(self, keys: str, page: str = "") -> str:
         """Return the address of a range ``first:last``."""
         first, last = keys.split(":")
         title, row, column = self._places[last]
-        assert title == self._places[first][0], f"{keys!r} reaches over two pages"
-        return f"{self.cell(first, page)}:${column_letters(column)}${row}"
+        start, first_row, first_column = self._places[first]
+        assert title == start, f"{keys!r} reaches over two pages"
+        assert row >= first_row, f"{keys!r} runs upwards"
+        assert column >= first_column, f"{keys!r} runs to the left"
+        return f"{self.cell(first, page)}:{place(row, column)}"
 
     def formula(self, formula: str, page: str) -> str:
         """Return a formula with every placeholder replaced by an address."""
@@ -181,6 +234,19 @@ class Addresses:
         """Return page, first column, first row, last column, last row of a range."""
         first, last = (self._places[key] for key in keys.split(":"))
         return first[0], first[2], first[1], last[2], last[1]
+
+    def values(self, keys: str) -> list[float | str | None]:
+        """Return what the cells of a range show: numbers, text, or None for an empty cell."""
+        title, left, top, right, bottom = self.bounds(keys)
+        cells = self._pages[title].cells
+        found = [cells.get((row, column)) for row in range(top, bottom + 1) for column in range(left, right + 1)]
+        return [None if cell is None else _shown(cell.content) for cell in found]
+
+
+def _shown(content: Content) -> float | str:
+    if isinstance(content, Text):
+        return clean(content.text)
+    return content.value if isinstance(content, Live) else content
 
 
 def live_cells(sheets: Sequence[SheetSpec]) -> Mapping[tuple[str, str], Live]:

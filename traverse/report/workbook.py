@@ -12,6 +12,7 @@ import math
 import re
 import zipfile
 from collections.abc import Mapping, Sequence
+from typing import Any
 from xml.etree import ElementTree
 
 from openpyxl import Workbook
@@ -21,15 +22,18 @@ from openpyxl.workbook.defined_name import DefinedName
 from openpyxl.worksheet.worksheet import Worksheet
 
 from traverse.report import _charts, _theme
-from traverse.report.spec import Addresses, Live, SheetSpec, Text, column_letters, live_cells
+from traverse.report.spec import Addresses, Content, Live, SheetSpec, Text, clean, column_letters, place, quoted
 
 _MAIN = "http://schemas.openxmlformats.org/spreadsheetml/2006/main"
-_CONTROL = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f]")
-# Lone surrogates and the two non-characters: no XML file can hold them.
-_UNWRITABLE = re.compile("[\ud800-\udfff\ufffe\uffff]")
-LONGEST = 32_767
+_CELL, _FORMULA, _VALUE, _INLINE = (f"{{{_MAIN}}}{tag}" for tag in ("c", "f", "v", "t"))
+_SPACE = "{http://www.w3.org/XML/1998/namespace}space"
+# Spreadsheet programs read _x0041_ in a cell's text as the character of that number.
+_CODE = re.compile("_(?=x[0-9A-Fa-f]{4}_)")
+_DECLARATION = b'<?xml version="1.0" encoding="UTF-8" standalone="yes"?>\n'
+_HEADER_LONGEST = 90
 _EPOCH = dt.datetime(1980, 1, 1)  # noqa: DTZ001 - a fixed date in the file's properties, without a zone
 DEFAULT_WIDTH = 12.0
+LINE_HEIGHT = 12.6  # points, for the theme's text size
 
 
 def build(specs: Sequence[SheetSpec], *, title: str, date: dt.date | None, subject: str) -> bytes:
@@ -54,7 +58,7 @@ def build(specs: Sequence[SheetSpec], *, title: str, date: dt.date | None, subje
         _fill(sheet, spec, addresses, {name: style.name for name, style in named.items()})
         _print_setup(sheet, spec, clean(title))
         for name, (row, column) in spec.names.items():
-            book.defined_names[name] = DefinedName(name, attr_text=f"'{spec.title}'!${column_letters(column)}${row}")
+            book.defined_names[name] = DefinedName(name, attr_text=f"{quoted(spec.title)}!{place(row, column)}")
     for spec in specs:
         for chart in spec.charts:
             _charts.add(book, spec.title, chart, addresses)
@@ -67,12 +71,6 @@ def build(specs: Sequence[SheetSpec], *, title: str, date: dt.date | None, subje
     return _finish(stream.getvalue(), specs, stamp)
 
 
-def clean(text: str) -> str:
-    """Return text that an XML file can hold; what it cannot is replaced visibly, and more than a cell holds is cut visibly."""
-    text = _CONTROL.sub("\ufffd", _UNWRITABLE.sub("\ufffd", text))
-    return text if len(text) <= LONGEST else text[: LONGEST - 12] + " [cut here]"
-
-
 def _fill(sheet: Worksheet, spec: SheetSpec, addresses: Addresses, named: Mapping[str, str]) -> None:
     """Write the cells of one page."""
     sheet.sheet_view.showGridLines = False
@@ -81,28 +79,43 @@ def _fill(sheet: Worksheet, spec: SheetSpec, addresses: Addresses, named: Mappin
         cell.style = named[put.style]
         content = put.content
         if isinstance(content, Text):
-            cell.value = clean(content.text)
+            cell.value = _CODE.sub("_x005F_", clean(content.text))
             # Set by hand: text that starts with '=' or looks like an error must stay text.
             cell.data_type = "s"
             if content.text[:1] in {"=", "+", "-", "@"}:
-                cell.quotePrefix = True  # type: ignore[attr-defined]
+                cell.quotePrefix = True
         elif isinstance(content, Live):
             cell.value = addresses.formula(content.formula, spec.title)
             cell.number_format = put.format
         else:
-            assert math.isfinite(content), f"{spec.title} {row}, {column}: a number that is none"
             cell.value = content
             cell.number_format = put.format
         if put.note:
-            cell.comment = Comment(clean(put.note), "traverse", height=60 + 18 * (len(put.note) // 40), width=260)
+            note = _CODE.sub("_x005F_", clean(put.note))
+            cell.comment = Comment(note, "traverse", height=60 + 18 * (len(note) // 40), width=260)
         if (row, column) in spec.spans:
             sheet.merge_cells(start_row=row, start_column=column, end_row=row, end_column=column + spec.spans[row, column] - 1)
     last = max((column for _, column in spec.cells), default=1)
     for column in range(1, last + 1):
         sheet.column_dimensions[get_column_letter(column)].width = spec.widths.get(column, DEFAULT_WIDTH)
+    for row, lines in _lines(spec).items():
+        if lines > 1:
+            sheet.row_dimensions[row].height = LINE_HEIGHT * lines + 2.0
 
 
-def _print_setup(sheet: Worksheet, spec: SheetSpec, title: str) -> None:
+def _lines(spec: SheetSpec) -> dict[int, int]:
+    """Return how many lines of text each row needs: no program heightens rows of merged cells by itself."""
+    found: dict[int, int] = {}
+    for (row, column), put in spec.cells.items():
+        if not isinstance(put.content, Text) or put.style not in _theme.WRAPPED:
+            continue
+        width = sum(spec.widths.get(column + i, DEFAULT_WIDTH) for i in range(spec.spans.get((row, column), 1)))
+        lines = sum(max(1, math.ceil(len(part) * 0.92 / width)) for part in put.content.text.split("\n"))
+        found[row] = max(found.get(row, 1), min(lines, 30))
+    return found
+
+
+def _print_setup(sheet: Any, spec: SheetSpec, title: str) -> None:
     """Make the page print on A4 and on Letter: one page wide, numbered, with its heads repeated."""
     sheet.page_setup.orientation = spec.orientation
     sheet.page_setup.paperSize = 9
@@ -111,7 +124,8 @@ def _print_setup(sheet: Worksheet, spec: SheetSpec, title: str) -> None:
     margins = sheet.page_margins
     margins.left = margins.right = 0.6
     margins.top, margins.bottom, margins.header, margins.footer = 0.75, 0.75, 0.35, 0.35
-    shown = title.replace("&", "&&")[:120]
+    # All parts together may have 255 characters, and a lone '&' would begin a code.
+    shown = " ".join(title.split())[:_HEADER_LONGEST].replace("&", "&&")
     sheet.oddHeader.left.text, sheet.oddHeader.right.text = shown, "&A"
     sheet.oddFooter.right.text = "page &P of &N"
     sheet.oddFooter.left.text = "values are live formulas; see Record for inputs and digests"
@@ -125,48 +139,62 @@ def _print_setup(sheet: Worksheet, spec: SheetSpec, title: str) -> None:
 
 def _finish(content: bytes, specs: Sequence[SheetSpec], stamp: dt.datetime) -> bytes:
     """Put the values beside the formulas and make the bytes the same each time."""
-    live = live_cells(specs)
-    pages = {f"xl/worksheets/sheet{number}.xml": spec.title for number, spec in enumerate(specs, start=1)}
+    pages = {f"xl/worksheets/sheet{number}.xml": spec for number, spec in enumerate(specs, start=1)}
     out = io.BytesIO()
     with zipfile.ZipFile(io.BytesIO(content)) as source, zipfile.ZipFile(out, "w", zipfile.ZIP_DEFLATED) as target:
         for name in sorted(source.namelist()):
             part = source.read(name)
             if name in pages:
-                part = _with_values(part, pages[name], live)
+                part = _with_values(part, pages[name])
             if name == "docProps/core.xml":
                 part = re.sub(rb"(<dcterms:modified[^>]*>)[^<]*", rb"\g<1>" + stamp.strftime("%Y-%m-%dT%H:%M:%SZ").encode(), part)
             if name.endswith((".xml", ".rels", ".vml")):
-                part = ElementTree.canonicalize(part.decode("utf-8")).encode("utf-8")
+                part = _DECLARATION + ElementTree.canonicalize(part.decode("utf-8")).encode("utf-8")
             info = zipfile.ZipInfo(name, (1980, 1, 1, 0, 0, 0))
             info.compress_type = zipfile.ZIP_DEFLATED
+            info.create_system = 3
             info.external_attr = 0o644 << 16
             target.writestr(info, part)
     return out.getvalue()
 
 
-def _with_values(part: bytes, page: str, live: Mapping[tuple[str, str], Live]) -> bytes:
-    """Put each formula's value into the page's XML."""
+def _with_values(part: bytes, spec: SheetSpec) -> bytes:
+    """Put each formula's value into the page's XML, and every number with all its digits."""
     ElementTree.register_namespace("", _MAIN)
     ElementTree.register_namespace("r", "http://schemas.openxmlformats.org/officeDocument/2006/relationships")
+    contents = {f"{column_letters(column)}{row}": put.content for (row, column), put in spec.cells.items()}
     root = ElementTree.fromstring(part)  # noqa: S314 - written a moment ago by this program
-    for cell in root.iter(f"{{{_MAIN}}}c"):
-        if cell.find(f"{{{_MAIN}}}f") is None:
-            continue
-        value = live[page, cell.get("r", "")].value
-        shown = cell.find(f"{{{_MAIN}}}v")
-        if shown is None:
-            shown = ElementTree.SubElement(cell, f"{{{_MAIN}}}v")
-        if isinstance(value, bool):
-            cell.set("t", "b")
-            shown.text = str(int(value))
-        elif isinstance(value, str):
-            cell.set("t", "str")
-            shown.text = value
-        else:
-            assert math.isfinite(value), f"{page} {cell.get('r')}: a formula without a value"
-            cell.attrib.pop("t", None)
-            shown.text = repr(float(value))
+    found = 0
+    for cell in root.iter(_CELL):
+        content = contents.get(cell.get("r", ""))
+        if cell.find(_FORMULA) is not None:
+            # Anything else would be a formula that no page asked for.
+            assert isinstance(content, Live), f"{spec.title} {cell.get('r')}: a formula out of nowhere"
+            found += 1
+        if content is not None and not isinstance(content, Text):
+            _show(cell, content)
+    assert found == sum(isinstance(content, Live) for content in contents.values()), f"{spec.title}: a formula is lost"
+    for text in root.iter(_INLINE):
+        text.set(_SPACE, "preserve")
     return ElementTree.tostring(root)
+
+
+def _show(cell: ElementTree.Element, content: Content) -> None:
+    """Put what a cell shows into its element."""
+    value = content.value if isinstance(content, Live) else content
+    assert not isinstance(value, Text), "text is no number"
+    shown = cell.find(_VALUE)
+    if shown is None:
+        shown = ElementTree.SubElement(cell, _VALUE)
+    cell.attrib.pop("t", None)
+    if isinstance(value, bool):
+        cell.set("t", "b")
+        shown.text = str(int(value))
+    elif isinstance(value, str):
+        cell.set("t", "str")
+        shown.text = clean(value)
+    else:
+        shown.text = repr(value) if type(value) is int else repr(float(value))
 
 
 def content_digest(content: bytes) -> str:

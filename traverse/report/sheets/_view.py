@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Container
 from dataclasses import dataclass
 
 from traverse import methods
@@ -58,10 +59,10 @@ class View:
         return UNITS[self.length_unit].from_si(value)
 
 
-def heads(sheet: SheetSpec, row: int, names: tuple[str, ...], column: int = 1) -> None:
-    """Put a row of column heads."""
+def heads(sheet: SheetSpec, row: int, names: tuple[str, ...], column: int = 1, right: Container[str] = ()) -> None:
+    """Put a row of column heads; those named in ``right`` stand over numbers."""
     for offset, name in enumerate(names):
-        sheet.put(row, column + offset, Text(name), style="heading")
+        sheet.put(row, column + offset, Text(name), style="heading right" if name in right else "heading")
 
 
 def decimals(places: int) -> str:

@@ -5,17 +5,18 @@ from __future__ import annotations
 import math
 
 from traverse.quantities import BY_NAME
+from traverse.report.sheets._cells import WITH_BUDGET
 from traverse.report.sheets._view import View, heads
 from traverse.report.spec import BarChart, Live, SheetSpec, Text
 from traverse.result import BudgetRow, Measured
 
 ORDER, TITLE = 40, "Uncertainty"
-# Quantities with a budget of their own on the page, the client's figure first.
-NAMES = ("actual_flow", "dry_standard_flow", "standard_flow", "mass_flow", "mean_velocity")
+CHART_ROWS = 20
 HEADS = (
     "input", "kind", "acts on", "as stated", "standard uncertainty", "unit", "sensitivity", "contribution",
     "share of variance", "degrees of freedom", "contribution^4 / d.o.f.",
 )
+NUMBERS = frozenset(HEADS) - {"input", "kind", "acts on", "as stated", "unit"}
 
 
 def sheets(view: View) -> list[SheetSpec]:
@@ -32,16 +33,16 @@ def sheets(view: View) -> list[SheetSpec]:
     sheet.put(3, 1, Text("Coverage probability"), style="label")
     sheet.put(3, 2, coverage, style="input", format="0.0 %", key="coverage")
     sheet.put(4, 1, Text("Layout term"), style="label")
-    sheet.put(4, 2, Text(view.result.layout_term), style="text")
-    row = 6
+    sheet.put(4, 2, Text(view.result.layout_term), style="text", span=8)
+    row = 6 + (CHART_ROWS if view.result.runs[0].budget.get("actual_flow") else 0)
     for index, result in view.runs:
-        for name in NAMES:
+        for name in WITH_BUDGET:
             rows, measured = result.budget.get(name, ()), result.quantities[name]
             if rows and measured is not None:
                 row = _budget(sheet, row, f"u{index}.{name}", f"{BY_NAME[name].label}, run {result.run.name}", rows, measured)
     if len(view.runs) > 1:
         row = _means(sheet, row, view)
-    for column, width in enumerate((26, 16, 12, 22, 14, 9, 14, 14, 12, 12, 14), start=1):
+    for column, width in enumerate((34, 14, 11, 24, 13, 8, 13, 13, 11, 11, 13), start=1):
         sheet.width(column, width)
     _chart(sheet, view)
     return [sheet]
@@ -50,12 +51,12 @@ def sheets(view: View) -> list[SheetSpec]:
 def _budget(sheet: SheetSpec, row: int, key: str, title: str, rows: tuple[BudgetRow, ...], measured: Measured) -> int:
     """Put one budget with its combination; return the next free row."""
     sheet.put(row, 1, Text(f"{title} [{measured.unit}]"), style="subtitle")
-    heads(sheet, row + 1, HEADS)
+    heads(sheet, row + 1, HEADS, right=NUMBERS)
     last = len(rows) - 1
     total = math.fsum(entry.contribution**2 for entry in rows)
     for i, entry in enumerate(rows):
         place = row + 2 + i
-        for column, text in ((1, entry.input.replace("_", " ")), (2, entry.kind), (3, "shared" if entry.shared else "per point"),
+        for column, text in ((1, _label(entry)), (2, entry.kind), (3, "shared" if entry.shared else "per point"),
                              (4, entry.stated), (6, entry.unit)):
             sheet.put(place, column, Text(text), style="text", key=f"{key}.label.{i}" if column == 1 else None)
         sheet.put(place, 5, entry.standard_uncertainty, style="value", format="0.000E+00", key=f"{key}.u.{i}")
@@ -73,6 +74,11 @@ def _budget(sheet: SheetSpec, row: int, key: str, title: str, rows: tuple[Budget
     return _combination(sheet, row + 2 + len(rows), key, f"{key}.d.0:{key}.d.{last}", f"{key}.f.0:{key}.f.{last}", measured)
 
 
+def _label(entry: BudgetRow) -> str:
+    name = entry.input.replace("_", " ")
+    return name if entry.kind == "plain" else f"{name}, {entry.kind}"
+
+
 def _combination(sheet: SheetSpec, row: int, key: str, parts: str, fourths: str, measured: Measured) -> int:
     """Put u, degrees of freedom, k and U below a column of contributions; return the next free row."""
     standard, expanded = measured.standard_uncertainty or 0.0, measured.expanded_uncertainty or 0.0
@@ -85,7 +91,7 @@ def _combination(sheet: SheetSpec, row: int, key: str, parts: str, fourths: str,
         ("expanded uncertainty U = k u", f"=«{key}.combined.k»*«{key}.combined.u»", expanded, "0.000E+00", "U"),
     )
     for offset, (label, formula, value, fmt, name) in enumerate(lines):
-        sheet.put(row + offset, 7, Text(label), style="label")
+        sheet.put(row + offset, 5, Text(label), style="label", span=3)
         if name == "k" and measured.degrees_of_freedom is not None:
             # Spreadsheet programs give Student's quantile to about eleven digits only, so it stands as a number.
             sheet.put(row + offset, 8, float(value), style="input", format=fmt, key=f"{key}.combined.k",
@@ -99,7 +105,7 @@ def _combination(sheet: SheetSpec, row: int, key: str, parts: str, fourths: str,
 def _means(sheet: SheetSpec, row: int, view: View) -> int:
     """Put the uncertainty of the mean over the runs: shared inputs averaged with their sign, the others over n."""
     count = len(view.runs)
-    for name in NAMES:
+    for name in WITH_BUDGET:
         spread = view.result.summary[name]
         entries: dict[tuple[str, str], list[tuple[int, int, BudgetRow]]] = {}
         for index, result in view.runs:
@@ -109,7 +115,7 @@ def _means(sheet: SheetSpec, row: int, view: View) -> int:
             continue
         key = f"um.{name}"
         sheet.put(row, 1, Text(f"{BY_NAME[name].label}, mean of {count} runs [{spread.measured.unit}]"), style="subtitle")
-        heads(sheet, row + 1, HEADS)
+        heads(sheet, row + 1, HEADS, right=NUMBERS)
         for i, found in enumerate(entries.values()):
             _mean_row(sheet, row + 2 + i, key, name, i, found, count)
         last = len(entries) - 1
@@ -123,7 +129,7 @@ def _mean_row(
     sheet: SheetSpec, row: int, key: str, name: str, i: int, found: list[tuple[int, int, BudgetRow]], count: int
 ) -> None:
     first = found[0][2]
-    for column, text in ((1, first.input.replace("_", " ")), (2, first.kind), (3, "shared" if first.shared else "per point"),
+    for column, text in ((1, _label(first)), (2, first.kind), (3, "shared" if first.shared else "per point"),
                          (4, first.stated)):
         sheet.put(row, column, Text(text), style="text")
     if first.shared:
@@ -154,5 +160,5 @@ def _chart(sheet: SheetSpec, view: View) -> None:
     sheet.chart(BarChart(
         title=f"Shares of the variance of the actual flow, run {view.result.runs[0].run.name}", x_title="", y_title="share",
         labels=f"u0.actual_flow.label.0:u0.actual_flow.label.{last}",
-        values=f"u0.actual_flow.share.0:u0.actual_flow.share.{last}", anchor="M6", width_cm=16, height_cm=9,
+        values=f"u0.actual_flow.share.0:u0.actual_flow.share.{last}", anchor="A6", width_cm=24, height_cm=9.5,
     ))

@@ -5,20 +5,13 @@ from __future__ import annotations
 from traverse.quantities import BY_NAME
 from traverse.report import cautions
 from traverse.report.numbers import decimals_for, difference, plain, shown, unit_of, unit_text
+from traverse.report.sheets._cells import WITH_BUDGET, WORKING
 from traverse.report.sheets._view import View, decimals, heads
-from traverse.report.sheets.budget import NAMES as WITH_BUDGET
 from traverse.report.spec import Live, SheetSpec, Text
 from traverse.report.text import difference_from_exact
 from traverse.units import UNITS
 
 ORDER, TITLE = 0, "Result"
-# Quantity -> the name of its cell in the working.
-WORKING = {
-    "mean_velocity": "V", "actual_flow": "Q", "standard_flow": "Qs", "dry_standard_flow": "Qsd", "mass_flow": "m",
-    "area": "A", "temperature": "Tm", "static_pressure": "psm", "absolute_pressure": "pm", "moisture": "x",
-    "molar_mass_dry": "Md", "molar_mass": "M", "density": "rhom", "mean_root_differential_pressure": "mr",
-    "reynolds_number": "Re",
-}
 FLOWS = ("actual_flow", "standard_flow", "dry_standard_flow", "mass_flow", "mean_velocity")
 STATE = tuple(name for name in WORKING if name not in FLOWS)
 DEFINED = {"actual_flow": "actual_flow", "dry_standard_flow": "dry_standard_flow", "mean_velocity": "mean_velocity"}
@@ -35,12 +28,16 @@ def sheets(view: View) -> list[SheetSpec]:
     row = _statement(sheet, view, row)
     row = _table(sheet, view, row + 1, "State of the gas and the section", STATE)
     row = _checks(sheet, view, row + 1)
-    row = _cautions(sheet, row + 1)
-    _units(sheet, view, row + 2)
+    _cautions(sheet, view, row + 1)
     runs = len(view.runs)
-    for column, width in enumerate((34, *(14,) * runs, *((14,) if runs > 1 else ()), 14, 10, 14, 10), start=1):
+    for column, width in enumerate((33, *(13,) * runs, *((13,) if runs > 1 else ()), 12, 10, 13, 10), start=1):
         sheet.width(column, width)
     return [sheet]
+
+
+def _across(view: View) -> int:
+    """Return the number of columns of the page."""
+    return len(view.runs) + (6 if len(view.runs) > 1 else 5)
 
 
 def _facts(sheet: SheetSpec, view: View, row: int) -> int:
@@ -62,7 +59,7 @@ def _facts(sheet: SheetSpec, view: View, row: int) -> int:
     ]
     for label, text in facts:
         sheet.put(row, 1, Text(label), style="label")
-        sheet.put(row, 2, Text(text), style="text")
+        sheet.put(row, 2, Text(text), style="text", span=_across(view) - 1)
         row += 1
     return row
 
@@ -73,14 +70,15 @@ def _table(sheet: SheetSpec, view: View, row: int, title: str, names: tuple[str,
     labels = [title, *(f"run {result.run.name}" for _, result in view.runs)]
     labels += ["mean"] if runs > 1 else []
     labels += ["\u00b1 U", "unit", "in other units", "unit"]
-    heads(sheet, row, tuple(labels))
+    heads(sheet, row, tuple(labels), right={*labels[1:-4], "\u00b1 U", "in other units"})
+    assert len(labels) == _across(view), "heads fill the page"
     for name in names:
         row += 1
         quantity = BY_NAME[name]
         sheet.put(row, 1, Text(quantity.label), style="label", note=f"{quantity.meaning}; symbol {quantity.symbol}")
         spread = view.result.summary[name]
         if spread is None:
-            sheet.put(row, 2, Text(f"not given: {view.result.summary_notes[name]}"), style="note")
+            sheet.put(row, 2, Text(f"not given: {view.result.summary_notes[name]}"), style="caution", span=_across(view) - 1)
             continue
         fmt = decimals(decimals_for(name, spread.measured.value, view.system))
         style = "result" if name in FLOWS else "value"
@@ -160,44 +158,29 @@ def _statement(sheet: SheetSpec, view: View, row: int) -> int:
             f"of design, {verdict} the tolerance"
             + (f" of \u00b1 {result.design.tolerance:g} %." if result.design.tolerance is not None else ".")
         )
-    lines += [finding.message for finding in result.findings if finding.level == "attention"]
     for text in lines:
-        sheet.put(row, 1, Text(text), style="note")
+        sheet.put(row, 1, Text(text), style="remark", span=_across(view))
         row += 1
+    for finding in result.findings:
+        if finding.level == "attention":
+            sheet.put(row, 1, Text(finding.message), style="warning", span=_across(view))
+            row += 1
     return row
 
 
 def _checks(sheet: SheetSpec, view: View, row: int) -> int:
-    heads(sheet, row, ("Checks", "count", "which"))
+    heads(sheet, row, ("Checks", "count", "which", *("",) * (_across(view) - 3)))
     for status in ("fail", "not evaluated", "pass", "not applicable"):
         row += 1
         found = [(run, check) for run, check in view.result.all_checks() if check.status == status]
         style = {"fail": "fail" if found else "text", "pass": "pass", "not evaluated": "attention" if found else "text"}
-        sheet.put(row, 1, Text(status), style=style.get(status, "faint"))
+        sheet.put(row, 1, Text(status), style=style.get(status, "faint text"))
         sheet.put(row, 2, len(found), style="value", format="0")
         names = dict.fromkeys(check.title for _, check in found)
-        sheet.put(row, 3, Text("; ".join(names)), style="text")
+        sheet.put(row, 3, Text("; ".join(names) or "none"), style="text", span=_across(view) - 2)
     return row + 1
 
 
-def _cautions(sheet: SheetSpec, row: int) -> int:
-    sheet.put(row, 1, Text("Cautions for work at the measuring plane"), style="heading")
-    for text in (*cautions.TEXTS, cautions.DEFER):
-        row += 1
-        sheet.put(row, 1, Text(text), style="note")
-    return row
-
-
-def _units(sheet: SheetSpec, view: View, row: int) -> None:
-    """Put the conversion factors that the formulas of this page use."""
-    heads(sheet, row, ("Units on this page", "in SI", "zero [SI]"))
-    symbols = dict.fromkeys(unit_of(name, system) for name in WORKING for system in (view.system, view.other))
-    for symbol in symbols:
-        unit = UNITS[symbol]
-        if unit.factor == 1.0 and unit.offset == 0.0:
-            continue
-        row += 1
-        sheet.put(row, 1, Text(symbol), style="label", note=unit.source)
-        sheet.put(row, 2, unit.factor, style="faint", format="General", key=f"unit.{symbol}.factor")
-        if unit.offset:
-            sheet.put(row, 3, unit.offset, style="faint", format="General", key=f"unit.{symbol}.offset")
+def _cautions(sheet: SheetSpec, view: View, row: int) -> None:
+    heads(sheet, row, ("Cautions for work at the plane", *("",) * (_across(view) - 1)))
+    sheet.put(row + 1, 1, Text(" ".join((*cautions.TEXTS, cautions.DEFER))), style="caution", span=_across(view))

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 import numpy as np
 
 from traverse.report.sheets._view import View, heads
@@ -26,20 +28,23 @@ def sheets(view: View) -> list[SheetSpec]:
     )
     for row, (label, text) in enumerate(facts, start=2):
         sheet.put(row, 1, Text(label), style="label")
-        sheet.put(row, 2, Text(text), style="text")
+        sheet.put(row, 2, Text(text), style="text", span=8)
     nipple = job.plane.port_depth
     sheet.put(6, 1, Text("Port depth"), style="label")
     sheet.put(6, 2, view.length(nipple.value) if nipple else 0.0, style="input", format=view.length_format(), key="port_depth",
               note="Length of the port nipple, added to every mark on the probe.")
     sheet.put(6, 3, Text(unit if nipple else f"{unit} (not stated)"), style="unit")
-    heads(sheet, FIRST - 1, tuple(f"{name} [{unit}]" if name in {"x", "y", "depth", "mark on probe"} else name for name in HEADS))
+    labels = tuple(f"{name} [{unit}]" if name in {"x", "y", "depth", "mark on probe"} else name for name in HEADS)
+    heads(sheet, FIRST - 1, labels, right={*labels[2:8]})
     for i in range(layout.size):
         _point(sheet, view, i)
     last = layout.size - 1
     sheet.put(FIRST + layout.size, 7, Text("sum of weights"), style="label")
     sheet.put(FIRST + layout.size, 8, Live(f"=SUM(«lay.w.0:lay.w.{last}»)", float(np.sum(layout.weight))), style="value",
               format="0.000000", key="lay.sum")
-    _outline(sheet, view)
+    _outline(sheet, view, FIRST + layout.size + 2)
+    for column, width in enumerate((14, 8, 8, 11, 11, 11, 14, 12, 20), start=1):
+        sheet.width(column, width)
     return [sheet]
 
 
@@ -57,19 +62,20 @@ def _point(sheet: SheetSpec, view: View, i: int) -> None:
     sheet.put(row, 9, Text("to the wall distance" if layout.moved[i] else ""), style="note")
 
 
-def _outline(sheet: SheetSpec, view: View) -> None:
-    """Put the outline of the section beside the table, and draw it with the points at true scale."""
+def _outline(sheet: SheetSpec, view: View, row: int) -> None:
+    """Draw the section with its points at true scale, and put the outline it is drawn from beside it."""
     section, layout = view.result.job.plane.section, view.layout
     if section.shape == "round":
-        angle = np.linspace(0.0, 2.0 * np.pi, 73)
+        angle = np.linspace(0.0, 2.0 * np.pi, 37)
         x, y = section.width / 2 * np.cos(angle), section.height / 2 * np.sin(angle)
     else:
         x = np.array([-1, 1, 1, -1, -1]) * section.width / 2
         y = np.array([-1, -1, 1, 1, -1]) * section.height / 2
-    heads(sheet, FIRST - 1, (f"outline x [{view.length_unit}]", f"outline y [{view.length_unit}]"), column=12)
+    names = (f"outline x [{view.length_unit}]", f"y [{view.length_unit}]")
+    heads(sheet, row, names, column=8, right=names)
     for i, (a, b) in enumerate(zip(x, y, strict=True)):
-        sheet.put(FIRST + i, 12, view.length(float(a)), style="faint", format=view.length_format(), key=f"lay.ox.{i}")
-        sheet.put(FIRST + i, 13, view.length(float(b)), style="faint", format=view.length_format(), key=f"lay.oy.{i}")
+        sheet.put(row + 1 + i, 8, view.length(float(a)), style="faint", format=view.length_format(), key=f"lay.ox.{i}")
+        sheet.put(row + 1 + i, 9, view.length(float(b)), style="faint", format=view.length_format(), key=f"lay.oy.{i}")
     series = [Series("inner wall", f"lay.ox.0:lay.ox.{len(x) - 1}", f"lay.oy.0:lay.oy.{len(x) - 1}", "outline")]
     for name in layout.lines:
         index = [i for i, line in enumerate(layout.line) if line == name]
@@ -77,8 +83,14 @@ def _outline(sheet: SheetSpec, view: View) -> None:
             series.append(Series(
                 f"line {name}", f"lay.x.{index[0]}:lay.x.{index[-1]}", f"lay.y.{index[0]}:lay.y.{index[-1]}", "points"
             ))
-    half = UNITS[view.length_unit].from_si(max(section.width, section.height)) * 0.55
+    half = _round_up(UNITS[view.length_unit].from_si(max(section.width, section.height)) * 0.51)
     sheet.chart(ScatterChart(
         title="Section, looking downstream", x_title=f"x [{view.length_unit}]", y_title=f"y [{view.length_unit}]",
-        series=tuple(series), anchor="O8", width_cm=15, height_cm=15, square=True, x_min=-half, x_max=half, y_min=-half, y_max=half,
+        series=tuple(series), anchor=f"A{row}", width_cm=13, height_cm=13, square=True, x_min=-half, x_max=half, y_min=-half, y_max=half,
     ))
+
+
+def _round_up(value: float) -> float:
+    """Return the next value of 1, 1.2, 1.5, 2, 2.5, 3, 4, 5, 6, 8, 10 times a power of ten."""
+    power = 10.0 ** math.floor(math.log10(value))
+    return next(step * power for step in (1, 1.2, 1.5, 2, 2.5, 3, 4, 5, 6, 8, 10) if step * power >= value)

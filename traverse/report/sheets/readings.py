@@ -26,9 +26,9 @@ def sheets(view: View) -> list[SheetSpec]:
         labels: list[str] = ["point"]
         for name in names:
             column = readings.columns[name]
-            labels += [f"{column.header} (text)", f"{name.replace('_', ' ')} [{column.unit}]"]
+            labels += [f"text under '{column.header}'", f"{name.replace('_', ' ')} [{column.unit}]"]
         labels += ["status", "rule applied", "reason", "place"]
-        heads(sheet, row + 1, tuple(labels))
+        heads(sheet, row + 1, tuple(labels), right={label for label in labels if label.endswith("]")})
         for i in range(view.layout.size):
             _point(sheet, row + 2 + i, index, i, view, names)
         row += view.layout.size + 4

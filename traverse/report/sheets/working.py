@@ -33,7 +33,7 @@ def _working(view: View, index: int) -> SheetSpec:
     point_table(ledger, view, run)
     gas_rows(ledger, view, run)
     total_rows(ledger, view, run)
-    for column, width in enumerate((34, 16, 14, 18, 14, 14, 14, 14), start=1):
+    for column, width in enumerate((34, 15, 13, *(10.5,) * 17), start=1):
         sheet.width(column, width)
     _chart(sheet, view, run, index)
     return sheet
@@ -87,5 +87,5 @@ def _chart(sheet: SheetSpec, view: View, run: RunView, index: int) -> None:
             ))
     sheet.chart(ScatterChart(
         title=f"Velocity along each line, run {run.result.run.name}", x_title=f"depth from the inner wall [{view.length_unit}]",
-        y_title="velocity [m/s]", series=tuple(series), anchor="J3", width_cm=17, height_cm=10,
+        y_title="velocity [m/s]", series=tuple(series), anchor="L3", width_cm=17, height_cm=10,
     ))
