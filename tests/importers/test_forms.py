@@ -53,7 +53,7 @@ def test_the_sample_gives_its_readings_in_si(tmp_path, write, form):
     (tmp_path / form.file).write_bytes((FORMS / form.file).read_bytes())
     path = write(None)
     path.write_text(path.read_text().replace('file = "readings.csv"', f'file = "{form.file}"\n{form.settings}'))
-    run, = load(path).runs
+    (run,) = load(path).runs
     readings = run.readings
     assert run.name == "1"
     assert readings.differential_pressure == pytest.approx(form.pressure, rel=1e-12)
@@ -86,14 +86,30 @@ def test_words_keep_their_status_and_text(tmp_path, write):
     (tmp_path / "readings.csv").write_bytes((FORMS / "words.csv").read_bytes())
     readings = load(write(None)).runs[0].readings
     assert readings.status == (
-        "read", "obstructed", "below range", "plugged", "negative", "over range", "read", "missing", "excluded", "read",
-        "read", "read",
+        "read",
+        "obstructed",
+        "below range",
+        "plugged",
+        "negative",
+        "over range",
+        "read",
+        "missing",
+        "excluded",
+        "read",
+        "read",
+        "read",
     )
     assert readings.reason[8] == "probe slipped"
     dp = readings.differential_pressure
     assert [math.isnan(value) for value in dp] == [False, True, False, True, False, False, False, True, True, False, False, False]
-    assert dp[2] == pytest.approx(0.01 * INCH) and dp[4] == pytest.approx(-0.03 * INCH) and dp[5] == pytest.approx(2 * INCH)
-    assert readings.text[2] == "<0.01" and readings.text[7] == "N/A" and readings.text[8] == "excluded: probe slipped"
+    assert dp[2] == pytest.approx(0.01 * INCH)
+    assert dp[4] == pytest.approx(-0.03 * INCH)
+    assert dp[5] == pytest.approx(2 * INCH)
+    assert readings.text[2] == "<0.01"
+    assert readings.text[7] == "N/A"
+    assert readings.text[8] == "excluded: probe slipped"
     column = readings.columns["differential_pressure"]
-    assert column.unit == "inH2O" and column.where[4] == "readings.csv:6"
-    assert np.isnan(column.number[1]) and column.number[4] == -0.03
+    assert column.unit == "inH2O"
+    assert column.where[4] == "readings.csv:6"
+    assert np.isnan(column.number[1])
+    assert column.number[4] == -0.03

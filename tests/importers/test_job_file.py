@@ -29,19 +29,25 @@ def test_a_plain_job(write):
     job = load(write())
     assert (job.title, job.date, job.method, job.units) == ("Test", dt.date(2026, 10, 14), "exact", "si")
     assert job.plane.section.width == pytest.approx(0.3)
-    assert job.layout.size == 12 and job.layout.rule == "equal-area"
+    assert job.layout.size == 12
+    assert job.layout.rule == "equal-area"
     assert job.runs[0].conditions.barometric.value == 100200.0
     assert job.runs[0].readings.static == pytest.approx([-150.0] * 12)
-    assert job.source.name == "job.toml" and len(job.source.sha256) == 64 and "[plane]" in job.source.text
+    assert job.source.name == "job.toml"
+    assert len(job.source.sha256) == 64
+    assert "[plane]" in job.source.text
     assert job.sources[1].name == "readings.csv"
 
 
-@pytest.mark.parametrize(("part", "body", "words"), [
-    ("plane", 'shape = "round"\ndiametre = "300 mm"', ("[plane]", "'diametre'", "perhaps diameter")),
-    ("gas", 'kind = "air"\nrelativ_humidity = "45 %"', ("[gas]", "perhaps relative_humidity")),
-    ("readings", 'file = "readings.csv"\nmethod = "exact"', ("[readings]", "'method'", "belongs into [job]")),
-    ("conditions", 'barometric = "1002 hPa"\nstatik = "0 Pa"', ("perhaps static",)),
-])
+@pytest.mark.parametrize(
+    ("part", "body", "words"),
+    [
+        ("plane", 'shape = "round"\ndiametre = "300 mm"', ("[plane]", "'diametre'", "perhaps diameter")),
+        ("gas", 'kind = "air"\nrelativ_humidity = "45 %"', ("[gas]", "perhaps relative_humidity")),
+        ("readings", 'file = "readings.csv"\nmethod = "exact"', ("[readings]", "'method'", "belongs into [job]")),
+        ("conditions", 'barometric = "1002 hPa"\nstatik = "0 Pa"', ("perhaps static",)),
+    ],
+)
 def test_an_unknown_key_names_the_nearest_known_one(write, part, body, words):
     refuse(write(**{part: body}), JobError, *words)
 
@@ -53,7 +59,7 @@ def test_an_unknown_table_names_the_nearest_known_one(write):
 DIMENSIONED = [(table, key) for table, keys in SCHEMA.items() for key, spec in keys.items() if spec.kind == "quantity"]
 
 
-@pytest.mark.parametrize(("table", "key"), DIMENSIONED, ids=lambda value: str(value))
+@pytest.mark.parametrize(("table", "key"), DIMENSIONED, ids=str)
 @pytest.mark.parametrize("value", ["5", "0.5", "true", '"5"', '"5 parsec"', "[1]"])
 def test_a_value_without_its_unit_is_refused_wherever_one_is_needed(write, table, key, value):
     refuse(write(**{table: f"{key} = {value}"}), UnitError, f"[{table}] {key}")
@@ -63,20 +69,23 @@ def test_there_are_dimensioned_keys_in_every_physical_table():
     assert {table for table, _ in DIMENSIONED} >= {"plane", "gas", "conditions", "reference", "pitot", "design", "readings"}
 
 
-@pytest.mark.parametrize(("table", "body", "words"), [
-    ("pitot", 'coefficient = "0.84"', ("bare number", "without quotes")),
-    ("layout", 'rule = "equal-area"\nlines = "2"\npoints = 6', ("whole number",)),
-    ("layout", 'rule = "equal-area"\nlines = 2.0\npoints = 6', ("whole number",)),
-    ("layout", 'rule = "equal-area"\nlines = true\npoints = 6', ("whole number",)),
-    ("layout", 'rule = "equal-area"\nlines = 2\npoints = "6"', ("[layout] points",)),
-    ("gas", 'kind = "air"\ndry = "true"', ("true or false",)),
-    ("job", 'title = 5', ("text in quotes",)),
-    ("job", 'title = "x"\ndate = "2026-10-14"', ("date without quotes",)),
-    ("job", 'method = "epa2"', ("epa-2",)),
-    ("plane", 'shape = "rund"\ndiameter = "1 m"', ('perhaps "round"',)),
-    ("corrections", 'wall_factor = "0.99"', ("bare number",)),
-    ("gas", 'kind = "air"\nrelative_humidity = "45 %"\nratio_of_specific_heats = 14', ("between 1 and 1.667",)),
-])
+@pytest.mark.parametrize(
+    ("table", "body", "words"),
+    [
+        ("pitot", 'coefficient = "0.84"', ("bare number", "without quotes")),
+        ("layout", 'rule = "equal-area"\nlines = "2"\npoints = 6', ("whole number",)),
+        ("layout", 'rule = "equal-area"\nlines = 2.0\npoints = 6', ("whole number",)),
+        ("layout", 'rule = "equal-area"\nlines = true\npoints = 6', ("whole number",)),
+        ("layout", 'rule = "equal-area"\nlines = 2\npoints = "6"', ("[layout] points",)),
+        ("gas", 'kind = "air"\ndry = "true"', ("true or false",)),
+        ("job", "title = 5", ("text in quotes",)),
+        ("job", 'title = "x"\ndate = "2026-10-14"', ("date without quotes",)),
+        ("job", 'method = "epa2"', ("epa-2",)),
+        ("plane", 'shape = "rund"\ndiameter = "1 m"', ('perhaps "round"',)),
+        ("corrections", 'wall_factor = "0.99"', ("bare number",)),
+        ("gas", 'kind = "air"\nrelative_humidity = "45 %"\nratio_of_specific_heats = 14', ("between 1 and 1.667",)),
+    ],
+)
 def test_a_value_of_another_kind_is_refused(write, table, body, words):
     refuse(write(**{table: body}), JobError, *words)
 
@@ -86,14 +95,25 @@ def test_a_bare_number_for_a_percentage_is_told_how_to_write_it(write, bare, tol
     refuse(write(gas=f'kind = "air"\nmoisture = {bare}'), UnitError, "[gas] moisture", told)
 
 
-@pytest.mark.parametrize(("table", "body"), [
-    ("readings", 'file = "r.csv"\nform = "matrix"'), ("readings", 'file = "r.csv"\nform = "log"'),
-    ("readings", 'file = "r.csv"\nsheet = "x"'), ("readings", 'file = "r.csv"\nmatrix = "points down"'),
-    ("readings", 'file = "r.csv"\nmissing = "field"'), ("corrections", "displacement = true"), ("corrections", "layout = true"),
-    ("pitot", 'type = "two-dimensional"'), ("pitot", 'type = "three-dimensional"'), ("pitot", 'calibration = "p.csv"'),
-    ("plane", 'shape = "flat-oval"\nwidth = "1 m"\nheight = "1 m"'), ("plane", 'shape = "annulus"\ndiameter = "1 m"'),
-    ("plane", 'shape = "polygon"'), ("plane", 'shape = "round"\ncore = "1 m"'),
-])
+@pytest.mark.parametrize(
+    ("table", "body"),
+    [
+        ("readings", 'file = "r.csv"\nform = "matrix"'),
+        ("readings", 'file = "r.csv"\nform = "log"'),
+        ("readings", 'file = "r.csv"\nsheet = "x"'),
+        ("readings", 'file = "r.csv"\nmatrix = "points down"'),
+        ("readings", 'file = "r.csv"\nmissing = "field"'),
+        ("corrections", "displacement = true"),
+        ("corrections", "layout = true"),
+        ("pitot", 'type = "two-dimensional"'),
+        ("pitot", 'type = "three-dimensional"'),
+        ("pitot", 'calibration = "p.csv"'),
+        ("plane", 'shape = "flat-oval"\nwidth = "1 m"\nheight = "1 m"'),
+        ("plane", 'shape = "annulus"\ndiameter = "1 m"'),
+        ("plane", 'shape = "polygon"'),
+        ("plane", 'shape = "round"\ncore = "1 m"'),
+    ],
+)
 def test_a_later_capability_is_refused_by_name(write, table, body):
     problem = refuse(write(**{table: body}), JobError, "not available in this version")
     assert problem.expected
@@ -144,19 +164,25 @@ def test_the_units_of_the_report_follow_the_section(write, diameter, system):
 
 def test_the_method_defaults_to_exact_with_a_finding(write):
     job = load(write(job='title = "x"\nunits = "si"'))
-    assert job.method == "exact" and findings(job, "method")[0].setting == "[job] method"
+    assert job.method == "exact"
+    assert findings(job, "method")[0].setting == "[job] method"
 
 
-@pytest.mark.parametrize(("body", "words"), [
-    ('shape = "round"', ("neither",)), ('shape = "round"\ndiameter = "1 m"\ncircumference = "3 m"', ("both",)),
-    ('shape = "rectangle"\nwidth = "1 m"', ("no height",)), ('shape = "round"\ndiameter = "1 m"\nwidth = "1 m"', ("no width",)),
-    ('shape = "rectangle"\nwidth = "1 m"\nheight = "1 m"\ndiameter = "1 m"', ("no diameter",)),
-    ('shape = "round"\ndiameter = "1 m"\nwall_thickness = "5 mm"', ("wall_thickness",)),
-    ('shape = "round"\ncircumference = "1 m"\nwall_thickness = "200 mm"', ("thinner",)),
-    ('shape = "round"\ndiameter = "-1 m"', ("greater than zero",)),
-    ('shape = "round"\ndiameter = "1 m"\nupstream = "-1 m"', ("zero or more",)),
-    ('diameter = "1 m"', ("no shape",)),
-])
+@pytest.mark.parametrize(
+    ("body", "words"),
+    [
+        ('shape = "round"', ("neither",)),
+        ('shape = "round"\ndiameter = "1 m"\ncircumference = "3 m"', ("both",)),
+        ('shape = "rectangle"\nwidth = "1 m"', ("no height",)),
+        ('shape = "round"\ndiameter = "1 m"\nwidth = "1 m"', ("no width",)),
+        ('shape = "rectangle"\nwidth = "1 m"\nheight = "1 m"\ndiameter = "1 m"', ("no diameter",)),
+        ('shape = "round"\ndiameter = "1 m"\nwall_thickness = "5 mm"', ("wall_thickness",)),
+        ('shape = "round"\ncircumference = "1 m"\nwall_thickness = "200 mm"', ("thinner",)),
+        ('shape = "round"\ndiameter = "-1 m"', ("greater than zero",)),
+        ('shape = "round"\ndiameter = "1 m"\nupstream = "-1 m"', ("zero or more",)),
+        ('diameter = "1 m"', ("no shape",)),
+    ],
+)
 def test_a_section_needs_exactly_its_own_dimensions(write, body, words):
     refuse(write(plane=body), JobError, *words)
 
@@ -168,34 +194,52 @@ def test_a_circumference_outside_the_wall(write):
 
 # --- gas -----------------------------------------------------------------------------------------------------------
 
-@pytest.mark.parametrize(("body", "humidity", "value"), [
-    ('kind = "air"\nrelative_humidity = "45 %"', "relative_humidity", 0.45), ('kind = "air"\nwet_bulb = "20 degC"', "wet_bulb", 293.15),
-    ('kind = "air"\ndew_point = "50 degF"', "dew_point", 283.15), ('kind = "air"\nhumidity_ratio = "8 g/kg"', "humidity_ratio", 0.008),
-    ('kind = "air"\nmoisture = "2 %"', "moisture", 0.02), ('kind = "air"\ndry = true', "dry", None),
-    ('kind = "flue-gas"\noxygen = "7.2 %"\ncarbon_dioxide = "11.8 %"\nsaturated = true', "saturated", None),
-    ('kind = "given"\ndensity = "1.2 kg/m3"', "none", None), ('kind = "given"\nmolar_mass = "29 g/mol"\nmoisture = "1 %"', "moisture", 0.01),
-])
+
+@pytest.mark.parametrize(
+    ("body", "humidity", "value"),
+    [
+        ('kind = "air"\nrelative_humidity = "45 %"', "relative_humidity", 0.45),
+        ('kind = "air"\nwet_bulb = "20 degC"', "wet_bulb", 293.15),
+        ('kind = "air"\ndew_point = "50 degF"', "dew_point", 283.15),
+        ('kind = "air"\nhumidity_ratio = "8 g/kg"', "humidity_ratio", 0.008),
+        ('kind = "air"\nmoisture = "2 %"', "moisture", 0.02),
+        ('kind = "air"\ndry = true', "dry", None),
+        ('kind = "flue-gas"\noxygen = "7.2 %"\ncarbon_dioxide = "11.8 %"\nsaturated = true', "saturated", None),
+        ('kind = "given"\ndensity = "1.2 kg/m3"', "none", None),
+        ('kind = "given"\nmolar_mass = "29 g/mol"\nmoisture = "1 %"', "moisture", 0.01),
+    ],
+)
 def test_the_forms_of_humidity(write, body, humidity, value):
     gas = load(write(gas=body)).runs[0].gas
     assert gas.humidity == humidity
     assert (gas.water.value if gas.water else None) == (pytest.approx(value) if value else None)
 
 
-@pytest.mark.parametrize(("body", "words"), [
-    ('kind = "air"', ("humidity", "exactly one of")),
-    ('kind = "air"\nrelative_humidity = "45 %"\ndew_point = "5 degC"', ("exactly one of",)),
-    ('kind = "air"\nrelative_humidity = "105 %"', ("0 to 100 %",)), ('kind = "air"\nrelative_humidity = "-5 %"', ("0 to 100 %",)),
-    ('kind = "air"\nmoisture = "100 %"', ("below 100 %",)), ('kind = "air"\nmoisture = "120 %"', ("below 100 %",)),
-    ('kind = "air"\ndry = false', ("dry = true",)), ('kind = "air"\noxygen = "21 %"', ('no meaning for kind = "air"',)),
-    ('kind = "air"\nsaturated = true', ("no meaning",)), ('relative_humidity = "45 %"', ("no kind",)),
-    ('kind = "flue-gas"\nmoisture = "9 %"', ("no analysis",)), ('kind = "flue-gas"\noxygen = "7 %"', ("humidity",)),
-    ('kind = "flue-gas"\noxygen = "70 %"\ncarbon_dioxide = "31 %"\ndry = true', ("= 101 %", "at most 100 %")),
-    ('kind = "flue-gas"\noxygen = "-1 %"\ndry = true', ("0 to 100 %",)), ('kind = "given"', ("neither",)),
-    ('kind = "given"\ndensity = "1.2 kg/m3"\nmolar_mass = "29 g/mol"', ("both",)),
-    ('kind = "given"\ndensity = "1.2 kg/m3"\ntemperature = "20 degC"', ("lack the pressure",)),
-    ('kind = "given"\nmolar_mass = "29 g/mol"\ntemperature = "20 degC"\npressure = "1 atm"', ("molar mass",)),
-    ('kind = "given"\ndensity = "-1 kg/m3"', ("above zero",)), ('kind = "air"\nhumidity_ratio = "-1 g/kg"', ("zero or more",)),
-])
+@pytest.mark.parametrize(
+    ("body", "words"),
+    [
+        ('kind = "air"', ("humidity", "exactly one of")),
+        ('kind = "air"\nrelative_humidity = "45 %"\ndew_point = "5 degC"', ("exactly one of",)),
+        ('kind = "air"\nrelative_humidity = "105 %"', ("0 to 100 %",)),
+        ('kind = "air"\nrelative_humidity = "-5 %"', ("0 to 100 %",)),
+        ('kind = "air"\nmoisture = "100 %"', ("below 100 %",)),
+        ('kind = "air"\nmoisture = "120 %"', ("below 100 %",)),
+        ('kind = "air"\ndry = false', ("dry = true",)),
+        ('kind = "air"\noxygen = "21 %"', ('no meaning for kind = "air"',)),
+        ('kind = "air"\nsaturated = true', ("no meaning",)),
+        ('relative_humidity = "45 %"', ("no kind",)),
+        ('kind = "flue-gas"\nmoisture = "9 %"', ("no analysis",)),
+        ('kind = "flue-gas"\noxygen = "7 %"', ("humidity",)),
+        ('kind = "flue-gas"\noxygen = "70 %"\ncarbon_dioxide = "31 %"\ndry = true', ("= 101 %", "at most 100 %")),
+        ('kind = "flue-gas"\noxygen = "-1 %"\ndry = true', ("0 to 100 %",)),
+        ('kind = "given"', ("neither",)),
+        ('kind = "given"\ndensity = "1.2 kg/m3"\nmolar_mass = "29 g/mol"', ("both",)),
+        ('kind = "given"\ndensity = "1.2 kg/m3"\ntemperature = "20 degC"', ("lack the pressure",)),
+        ('kind = "given"\nmolar_mass = "29 g/mol"\ntemperature = "20 degC"\npressure = "1 atm"', ("molar mass",)),
+        ('kind = "given"\ndensity = "-1 kg/m3"', ("above zero",)),
+        ('kind = "air"\nhumidity_ratio = "-1 g/kg"', ("zero or more",)),
+    ],
+)
 def test_a_gas_that_cannot_be_is_refused(write, body, words):
     refuse(write(gas=body), JobError, "[gas]", *words)
 
@@ -206,20 +250,30 @@ def test_a_gas_must_be_stated(write):
 
 def test_an_unstated_main_component_is_an_attention_finding(write):
     job = load(write(gas='kind = "flue-gas"\noxygen = "7.2 %"\nmoisture = "9 %"'))
-    assert findings(job, "gas")[0].level == "attention" and "carbon_dioxide" in findings(job, "gas")[0].message
+    assert findings(job, "gas")[0].level == "attention"
+    assert "carbon_dioxide" in findings(job, "gas")[0].message
 
 
 # --- conditions, pitot, reference, design, corrections -----------------------------------------------------------------
 
-@pytest.mark.parametrize(("body", "words"), [
-    ('static = "0 Pa"', ("no barometric",)), ('barometric = "12 inH2O"', ("barometric", "gauge")),
-    ('barometric = "130 kPa"', ("station",)), ('barometric = "1002 hPa"\naltitude = "100 m"', ("both",)),
-    ('altitude = "100 m"', ("model",)), ('altitude = "20 km"\nmodel = "standard-atmosphere"', ("altitude",)),
-    ('barometric = "1002 hPa"\nstatic = "1001 hPa"', ("looks absolute",)), ('barometric = "1002 hPa"\nstatic = "11 psia"', ("looks absolute",)),
-    ('barometric = "14.7 psig"', ("absolute",)), ('barometric = "1002 hPa"\nmodel = "standard-atmosphere"', ("model",)),
-    ('barometric = "1002 hPa"\ntemperature = "-300 degC"', ("absolute zero",)),
-    ('altitude = "100 m"\nmodel = "isa"', ('"standard-atmosphere"',)),
-])
+
+@pytest.mark.parametrize(
+    ("body", "words"),
+    [
+        ('static = "0 Pa"', ("no barometric",)),
+        ('barometric = "12 inH2O"', ("barometric", "gauge")),
+        ('barometric = "130 kPa"', ("station",)),
+        ('barometric = "1002 hPa"\naltitude = "100 m"', ("both",)),
+        ('altitude = "100 m"', ("model",)),
+        ('altitude = "20 km"\nmodel = "standard-atmosphere"', ("altitude",)),
+        ('barometric = "1002 hPa"\nstatic = "1001 hPa"', ("looks absolute",)),
+        ('barometric = "1002 hPa"\nstatic = "11 psia"', ("looks absolute",)),
+        ('barometric = "14.7 psig"', ("absolute",)),
+        ('barometric = "1002 hPa"\nmodel = "standard-atmosphere"', ("model",)),
+        ('barometric = "1002 hPa"\ntemperature = "-300 degC"', ("absolute zero",)),
+        ('altitude = "100 m"\nmodel = "isa"', ('"standard-atmosphere"',)),
+    ],
+)
 def test_a_state_that_cannot_be_is_refused(write, body, words):
     refuse(write(conditions=body), JobError, "[conditions]", *words)
 
@@ -229,13 +283,15 @@ def test_altitude_by_the_named_model(write):
     job = load(write(conditions='altitude = "1600 m"\nmodel = "standard-atmosphere"\nstatic = "0 Pa"\ntemperature = "20 degC"'))
     conditions = job.runs[0].conditions
     assert conditions.barometric.value == pytest.approx(101325 * (1 - 2.25577e-5 * 1600) ** 5.25588, rel=1e-12)
-    assert conditions.barometric.text == "1600 m" and "standard atmosphere" in conditions.barometric_source
+    assert conditions.barometric.text == "1600 m"
+    assert "standard atmosphere" in conditions.barometric_source
 
 
 def test_static_pressure_not_stated_is_zero_and_said(write):
     job = load(write(conditions='barometric = "1002 hPa"\ntemperature = "25 degC"'))
-    found, = findings(job, "static pressure")
-    assert found.level == "attention" and found.message == "static pressure not stated, taken as 0"
+    (found,) = findings(job, "static pressure")
+    assert found.level == "attention"
+    assert found.message == "static pressure not stated, taken as 0"
     assert job.runs[0].readings.static == pytest.approx([0.0] * 12)
 
 
@@ -256,20 +312,27 @@ def test_without_a_default_the_coefficient_is_a_question(write, pitot):
 
 def test_the_type_defaults_to_pitot_static_with_a_finding(write):
     job = load(write(pitot="coefficient = 0.99"))
-    assert job.runs[0].pitot.type == "pitot-static" and findings(job, "pitot")[0].setting == "[pitot] type"
+    assert job.runs[0].pitot.type == "pitot-static"
+    assert findings(job, "pitot")[0].setting == "[pitot] type"
 
 
-@pytest.mark.parametrize(("body", "words"), [
-    ('temperature = "20 degC"', ("no pressure",)), ('pressure = "1 atm"', ("no temperature",)),
-    ('density = "1.2 kg/m3"\npressure = "1 atm"', ("density beside",)), ('temperature = "20 degC"\npressure = "0 Pa"', ("above zero",)),
-])
+@pytest.mark.parametrize(
+    ("body", "words"),
+    [
+        ('temperature = "20 degC"', ("no pressure",)),
+        ('pressure = "1 atm"', ("no temperature",)),
+        ('density = "1.2 kg/m3"\npressure = "1 atm"', ("density beside",)),
+        ('temperature = "20 degC"\npressure = "0 Pa"', ("above zero",)),
+    ],
+)
 def test_a_reference_is_whole_or_absent(write, body, words):
     refuse(write(reference=body), JobError, "[reference]", *words)
 
 
 def test_references(write):
     reference = load(write(reference='temperature = "68 degF"\npressure = "29.92 inHg"')).reference
-    assert reference.temperature.value == pytest.approx(293.15) and reference.source == "[reference] 68 degF and 29.92 inHg"
+    assert reference.temperature.value == pytest.approx(293.15)
+    assert reference.source == "[reference] 68 degF and 29.92 inHg"
     assert load(write(reference='density = "0.075 lb/ft3"')).reference.density.value == pytest.approx(1.20138, rel=1e-5)
     assert load(write()).reference is None
 
@@ -281,7 +344,8 @@ def test_a_design_flow_at_standard_conditions_is_refused(write):
 @pytest.mark.parametrize("text", ["±10 %", "+-10 %", "+/-10 %", "+/- 10 %"])
 def test_tolerances(write, text):
     design = load(write(design=f'actual_flow = "24000 cfm"\ntolerance = "{text}"')).design
-    assert design.tolerance.value == pytest.approx(0.1) and design.tolerance.text == text
+    assert design.tolerance.value == pytest.approx(0.1)
+    assert design.tolerance.text == text
 
 
 @pytest.mark.parametrize("text", ["10 %", "-5/+10 %", "±10", "±0 %", "±150 %"])
@@ -301,24 +365,37 @@ def test_wall_alone_changes_nothing(write):
     assert load(write(plane='shape = "round"\ndiameter = "3 m"\nwall = "brick"')).corrections.wall_factor is None
 
 
-@pytest.mark.parametrize(("plane", "body", "words"), [
-    ('shape = "round"\ndiameter = "3 m"', 'wall_factor = "default"', ("[plane] wall",)),
-    ('shape = "rectangle"\nwidth = "3 m"\nheight = "3 m"\nwall = "metal"', 'wall_factor = "default"', ("round",)),
-    ('shape = "round"\ndiameter = "3 m"', "wall_factor = 1.2", ("0.9 to 1",)), ('shape = "round"\ndiameter = "3 m"', "blockage = true", ("stem",)),
-    ('shape = "round"\ndiameter = "3 m"', 'turbulence = "100 %"', ("turbulence",)),
-])
+@pytest.mark.parametrize(
+    ("plane", "body", "words"),
+    [
+        ('shape = "round"\ndiameter = "3 m"', 'wall_factor = "default"', ("[plane] wall",)),
+        ('shape = "rectangle"\nwidth = "3 m"\nheight = "3 m"\nwall = "metal"', 'wall_factor = "default"', ("round",)),
+        ('shape = "round"\ndiameter = "3 m"', "wall_factor = 1.2", ("0.9 to 1",)),
+        ('shape = "round"\ndiameter = "3 m"', "blockage = true", ("stem",)),
+        ('shape = "round"\ndiameter = "3 m"', 'turbulence = "100 %"', ("turbulence",)),
+    ],
+)
 def test_a_correction_needs_what_it_acts_on(write, plane, body, words):
-    layout = 'rule = "log-tchebycheff"\nlines = 6\npoints = 6' if "rectangle" in plane else 'rule = "equal-area"\nlines = 2\npoints = 6'
+    layout = (
+        'rule = "log-tchebycheff"\nlines = 6\npoints = 6'
+        if "rectangle" in plane
+        else 'rule = "equal-area"\nlines = 2\npoints = 6'
+    )
     refuse(write(plane=plane, corrections=body, layout=layout), JobError, *words)
 
 
 def test_corrections(write):
-    job = load(write(pitot='type = "pitot-static"\ncoefficient = 1.0\nstem = "10 mm"',
-                     corrections='wall_factor = 0.99\nturbulence = "5 %"\nblockage = true'))
+    job = load(
+        write(
+            pitot='type = "pitot-static"\ncoefficient = 1.0\nstem = "10 mm"',
+            corrections='wall_factor = 0.99\nturbulence = "5 %"\nblockage = true',
+        )
+    )
     assert (job.corrections.wall_factor, job.corrections.turbulence.value, job.corrections.blockage) == (0.99, 0.05, True)
 
 
 # --- layout ------------------------------------------------------------------------------------------------------------
+
 
 def test_an_unknown_rule_names_the_nearest(write):
     refuse(write(layout='rule = "log-tchebychef"\nlines = 2\npoints = 6'), JobError, 'perhaps "log-tchebycheff"')
@@ -332,7 +409,8 @@ def test_a_layout_needs_rule_lines_and_points(write, body):
 def test_points_moved_off_the_wall_are_findings(write):
     # EPA Method 1 section 11.3.3: 1.3 cm in a duct below 0.61 m; the outermost of 6 points lies at 4.4 % of 200 mm.
     job = load(write(job='method = "epa-2"\nunits = "si"', plane='shape = "round"\ndiameter = "200 mm"'))
-    assert job.layout.depth[0] == pytest.approx(0.013) and job.layout.moved[0]
+    assert job.layout.depth[0] == pytest.approx(0.013)
+    assert job.layout.moved[0]
     assert job.layout.findings[0].level == "attention"
     assert not any(load(write(plane='shape = "round"\ndiameter = "200 mm"')).layout.moved)
 
@@ -343,16 +421,24 @@ points = [{line = "A", point = 1, depth = "40 mm", weight = 0.25}, {line = "A", 
 FOUR = "line,point,dp [Pa]\nA,1,20.5\nA,2,21.5\nB,1,22.5\nB,2,23.5\n"
 
 
-@pytest.mark.parametrize("body", [
-    CUSTOM, 'rule = "custom"\nlines = 2\ndepths = ["40 mm", "260 mm"]\nweights = [0.5, 0.5]', 'rule = "custom"\nfile = "points.csv"',
-])
+@pytest.mark.parametrize(
+    "body",
+    [
+        CUSTOM,
+        'rule = "custom"\nlines = 2\ndepths = ["40 mm", "260 mm"]\nweights = [0.5, 0.5]',
+        'rule = "custom"\nfile = "points.csv"',
+    ],
+)
 def test_custom_points_in_three_ways(write, tmp_path, body):
     (tmp_path / "points.csv").write_text(
-        "line;point;depth [cm];weight\nA;1;4,0;0,25\nA;2;26,0;0,25\nB;1;4,0;0,25\nB;2;26,0;0,25\n")
+        "line;point;depth [cm];weight\nA;1;4,0;0,25\nA;2;26,0;0,25\nB;1;4,0;0,25\nB;2;26,0;0,25\n"
+    )
     path = write(FOUR, layout=body)
     layout = load(path).layout
-    assert layout.depth == pytest.approx([0.04, 0.26] * 2) and layout.weight == pytest.approx([0.25] * 4)
-    assert layout.x == pytest.approx([0.11, -0.11, 0, 0]) and layout.y == pytest.approx([0, 0, 0.11, -0.11])
+    assert layout.depth == pytest.approx([0.04, 0.26] * 2)
+    assert layout.weight == pytest.approx([0.25] * 4)
+    assert layout.x == pytest.approx([0.11, -0.11, 0, 0])
+    assert layout.y == pytest.approx([0, 0, 0.11, -0.11])
     assert layout.labels() == ("A1", "A2", "B1", "B2")
     assert load_setup(path).layout.depth == pytest.approx(layout.depth)
 
@@ -360,23 +446,31 @@ def test_custom_points_in_three_ways(write, tmp_path, body):
 def test_custom_points_from_the_readings(write):
     text = "line,point,x [mm],y [mm],weight,dp [Pa]\nP,1,100,0,0.3,20.5\nP,2,-100,0,0.3,21.5\nQ,1,0,100,0.2,22.5\nQ,2,0,-100,0.2,23.5\n"
     job = load(write(text, layout='rule = "custom"'))
-    assert job.layout.x == pytest.approx([0.1, -0.1, 0, 0]) and job.layout.weight == pytest.approx([0.3, 0.3, 0.2, 0.2])
+    assert job.layout.x == pytest.approx([0.1, -0.1, 0, 0])
+    assert job.layout.weight == pytest.approx([0.3, 0.3, 0.2, 0.2])
     assert job.runs[0].readings.differential_pressure == pytest.approx([20.5, 21.5, 22.5, 23.5])
 
 
-@pytest.mark.parametrize(("body", "words"), [
-    ('rule = "custom"\ndepths = ["40 mm"]\nweights = [0.5, 0.5]\nlines = 2', ("1 depths and 2 weights",)),
-    ('rule = "custom"\ndepths = ["40 mm"]', ("weights",)), ('rule = "custom"\npoints = [{depth = "4 mm"}]', ("no weight",)),
-    ('rule = "custom"\npoints = [{depht = "4 mm", weight = 1.0}]', ("perhaps depth",)),
-    ('rule = "custom"\npoints = [{weight = 1.0}]', ("without a place",)), ('rule = "custom"\npoints = [4]', ("a table",)),
-    ('rule = "equal-area"\nlines = 2\npoints = 6\nweights = [1.0]', ('only with rule = "custom"',)),
-    ('rule = "custom"', ("without weights",)), ('rule = "custom"\npoints = [{depth = 4, weight = 1.0}]', ("no unit",)),
-])
+@pytest.mark.parametrize(
+    ("body", "words"),
+    [
+        ('rule = "custom"\ndepths = ["40 mm"]\nweights = [0.5, 0.5]\nlines = 2', ("1 depths and 2 weights",)),
+        ('rule = "custom"\ndepths = ["40 mm"]', ("weights",)),
+        ('rule = "custom"\npoints = [{depth = "4 mm"}]', ("no weight",)),
+        ('rule = "custom"\npoints = [{depht = "4 mm", weight = 1.0}]', ("perhaps depth",)),
+        ('rule = "custom"\npoints = [{weight = 1.0}]', ("without a place",)),
+        ('rule = "custom"\npoints = [4]', ("a table",)),
+        ('rule = "equal-area"\nlines = 2\npoints = 6\nweights = [1.0]', ('only with rule = "custom"',)),
+        ('rule = "custom"', ("without weights",)),
+        ('rule = "custom"\npoints = [{depth = 4, weight = 1.0}]', ("no unit",)),
+    ],
+)
 def test_custom_points_that_say_too_little_are_refused(write, body, words):
     refuse(write(FOUR, layout=body), (JobError, LayoutError, UnitError), *words)
 
 
 # --- runs --------------------------------------------------------------------------------------------------------------
+
 
 def two_runs(extra=""):
     rows = "".join(f"{run},{line},{point},{10 * point}.5{extra}\n" for run in (1, 2) for line in "AB" for point in range(1, 7))
@@ -384,12 +478,19 @@ def two_runs(extra=""):
 
 
 def test_a_run_overrides_conditions_gas_and_pitot(write):
-    job = load(write(two_runs(), more='[[run]]\nname = "2"\nstatic = "-80 Pa"\ndew_point = "10 degC"\ncoefficient = 0.99\naltitude = "0 m"\n'
-                                      'model = "standard-atmosphere"\n'))
+    job = load(
+        write(
+            two_runs(),
+            more='[[run]]\nname = "2"\nstatic = "-80 Pa"\ndew_point = "10 degC"\ncoefficient = 0.99\naltitude = "0 m"\n'
+            'model = "standard-atmosphere"\n',
+        )
+    )
     first, second = job.runs
-    assert first.conditions.static.value == -150 and second.conditions.static.value == -80
+    assert first.conditions.static.value == -150
+    assert second.conditions.static.value == -80
     assert second.readings.static == pytest.approx([-80] * 12)
-    assert first.gas.humidity == "relative_humidity" and second.gas.humidity == "dew_point"
+    assert first.gas.humidity == "relative_humidity"
+    assert second.gas.humidity == "dew_point"
     assert (first.pitot.coefficient, second.pitot.coefficient) == (1.0, 0.99)
     assert (first.conditions.barometric.value, second.conditions.barometric.value) == (100200.0, 101325.0)
 
@@ -404,11 +505,17 @@ def test_another_tube_does_not_keep_the_coefficient(write):
     refuse(write(two_runs(), more='[[run]]\nname = "2"\ntype = "s-type"\n'), JobError, "no coefficient")
 
 
-@pytest.mark.parametrize(("more", "words"), [
-    ('[[run]]\nname = "3"\nstatic = "0 Pa"\n', ("no run '3'", "'1', '2'")), ('[[run]]\nstatic = "0 Pa"\n', ("no name",)),
-    ('[[run]]\nname = 2\n', ("text",)), ('[[run]]\nname = "2"\n[[run]]\nname = "2"\n', ("twice",)),
-    ('[[run]]\nname = "2"\nstattic = "0 Pa"\n', ("perhaps static",)), ('[run]\nname = "2"\n', ("[[run]]",)),
-])
+@pytest.mark.parametrize(
+    ("more", "words"),
+    [
+        ('[[run]]\nname = "3"\nstatic = "0 Pa"\n', ("no run '3'", "'1', '2'")),
+        ('[[run]]\nstatic = "0 Pa"\n', ("no name",)),
+        ("[[run]]\nname = 2\n", ("text",)),
+        ('[[run]]\nname = "2"\n[[run]]\nname = "2"\n', ("twice",)),
+        ('[[run]]\nname = "2"\nstattic = "0 Pa"\n', ("perhaps static",)),
+        ('[run]\nname = "2"\n', ("[[run]]",)),
+    ],
+)
 def test_runs_that_do_not_fit(write, more, words):
     refuse(write(two_runs(), more=more), JobError, *words)
 
@@ -419,6 +526,7 @@ def test_the_only_run_is_one(write):
 
 # --- uncertainty -------------------------------------------------------------------------------------------------------
 
+
 def components(write, line, **parts):
     job = load(write(uncertainty=line, **parts))
     return [(c.standard, c.relative, c.shared, c.distribution, c.degrees_of_freedom) for c in job.uncertainties.components]
@@ -428,32 +536,48 @@ INF = float("inf")
 ROOT3 = 3**0.5
 
 
-@pytest.mark.parametrize(("line", "expected"), [
-    ('coefficient = "0.5 %"', [(0.005, True, True, "standard", INF)]),
-    ('coefficient = "±1 %"', [(0.01 / ROOT3, True, True, "limits", INF)]), ('coefficient = "+-1 %"', [(0.01 / ROOT3, True, True, "limits", INF)]),
-    ('coefficient = "+/-1 %"', [(0.01 / ROOT3, True, True, "limits", INF)]),
-    ('coefficient = "1 % (k=2)"', [(0.005, True, True, "expanded", INF)]), ('coefficient = "1 % (k=2, df=9)"', [(0.005, True, True, "expanded", 9)]),
-    ('coefficient = "1 % (df=9)"', [(0.01, True, True, "standard", 9)]), ('coefficient = "0.01"', [(0.01, False, True, "standard", INF)]),
-    ('barometric = "±1 % + ±0.5 Pa"', [(0.01 / ROOT3, True, True, "limits", INF), (0.5 / ROOT3, False, True, "limits", INF)]),
-    ('barometric = "+-1 % + +-0.5 Pa"', [(0.01 / ROOT3, True, True, "limits", INF), (0.5 / ROOT3, False, True, "limits", INF)]),
-    ('differential_pressure = {resolution = "0.1 Pa"}', [(0.1 / 2 / ROOT3, False, False, "limits", INF)]),
-    ('differential_pressure = {calibration = "1 %", zero = "±1 Pa", repeatability = "2 %"}',
-     [(0.01, True, True, "standard", INF), (1 / ROOT3, False, True, "limits", INF), (0.02, True, False, "standard", INF)]),
-    ('differential_pressure = "1e+1 Pa"', [(10, False, True, "standard", INF)]),
-    # A step of temperature has no offset; a percentage of temperature is of the absolute temperature.
-    ('temperature = "±2 degC"', [(2 / ROOT3, False, True, "limits", INF)]), ('temperature = "1.8 degF"', [(1.0, False, True, "standard", INF)]),
-    ('temperature = "1 %"', [(0.01, True, True, "standard", INF)]),
-    ('relative_humidity = "2 %"', [(0.02, False, True, "standard", INF)]), ('dimensions = "±3 mm"', [(0.003 / ROOT3, False, True, "limits", INF)]),
-    ('position = "±3 mm"', [(0.003 / ROOT3, False, False, "limits", INF)]), ('yaw = "180 deg"', [(3.141592653589793, False, True, "standard", INF)]),
-    ('layout = "1.5 %"', [(0.015, True, True, "standard", INF)]), ('layout = "none"', []),
-    # One value from [conditions] serves all points: even its resolution is one deviation for all of them.
-    ('temperature = {resolution = "1 K"}', [(0.5 / ROOT3, False, True, "limits", INF)]),
-])
+@pytest.mark.parametrize(
+    ("line", "expected"),
+    [
+        ('coefficient = "0.5 %"', [(0.005, True, True, "standard", INF)]),
+        ('coefficient = "±1 %"', [(0.01 / ROOT3, True, True, "limits", INF)]),
+        ('coefficient = "+-1 %"', [(0.01 / ROOT3, True, True, "limits", INF)]),
+        ('coefficient = "+/-1 %"', [(0.01 / ROOT3, True, True, "limits", INF)]),
+        ('coefficient = "1 % (k=2)"', [(0.005, True, True, "expanded", INF)]),
+        ('coefficient = "1 % (k=2, df=9)"', [(0.005, True, True, "expanded", 9)]),
+        ('coefficient = "1 % (df=9)"', [(0.01, True, True, "standard", 9)]),
+        ('coefficient = "0.01"', [(0.01, False, True, "standard", INF)]),
+        ('barometric = "±1 % + ±0.5 Pa"', [(0.01 / ROOT3, True, True, "limits", INF), (0.5 / ROOT3, False, True, "limits", INF)]),
+        (
+            'barometric = "+-1 % + +-0.5 Pa"',
+            [(0.01 / ROOT3, True, True, "limits", INF), (0.5 / ROOT3, False, True, "limits", INF)],
+        ),
+        ('differential_pressure = {resolution = "0.1 Pa"}', [(0.1 / 2 / ROOT3, False, False, "limits", INF)]),
+        (
+            'differential_pressure = {calibration = "1 %", zero = "±1 Pa", repeatability = "2 %"}',
+            [(0.01, True, True, "standard", INF), (1 / ROOT3, False, True, "limits", INF), (0.02, True, False, "standard", INF)],
+        ),
+        ('differential_pressure = "1e+1 Pa"', [(10, False, True, "standard", INF)]),
+        # A step of temperature has no offset; a percentage of temperature is of the absolute temperature.
+        ('temperature = "±2 degC"', [(2 / ROOT3, False, True, "limits", INF)]),
+        ('temperature = "1.8 degF"', [(1.0, False, True, "standard", INF)]),
+        ('temperature = "1 %"', [(0.01, True, True, "standard", INF)]),
+        ('relative_humidity = "2 %"', [(0.02, False, True, "standard", INF)]),
+        ('dimensions = "±3 mm"', [(0.003 / ROOT3, False, True, "limits", INF)]),
+        ('position = "±3 mm"', [(0.003 / ROOT3, False, False, "limits", INF)]),
+        ('yaw = "180 deg"', [(3.141592653589793, False, True, "standard", INF)]),
+        ('layout = "1.5 %"', [(0.015, True, True, "standard", INF)]),
+        ('layout = "none"', []),
+        # One value from [conditions] serves all points: even its resolution is one deviation for all of them.
+        ('temperature = {resolution = "1 K"}', [(0.5 / ROOT3, False, True, "limits", INF)]),
+    ],
+)
 def test_the_grammar_of_uncertainties(write, line, expected):
     found = components(write, line)
     assert len(found) == len(expected)
     for have, want in zip(found, expected, strict=True):
-        assert have[0] == pytest.approx(want[0], rel=1e-12) and have[1:] == want[1:]
+        assert have[0] == pytest.approx(want[0], rel=1e-12)
+        assert have[1:] == want[1:]
 
 
 def test_the_resolution_of_a_column_is_per_point(write):
@@ -462,24 +586,45 @@ def test_the_resolution_of_a_column_is_per_point(write):
     assert [component.shared for component in job.uncertainties.components] == [False, True]
 
 
-@pytest.mark.parametrize(("line", "mode"), [('layout = "estimate"', "estimate"), ('layout = "none"', "none"), ('layout = "1 %"', "stated"),
-                                            ("coverage = 0.9", "none")])
+@pytest.mark.parametrize(
+    ("line", "mode"),
+    [('layout = "estimate"', "estimate"), ('layout = "none"', "none"), ('layout = "1 %"', "stated"), ("coverage = 0.9", "none")],
+)
 def test_the_layout_term(write, line, mode):
     uncertainties = load(write(uncertainty=line)).uncertainties
-    assert uncertainties.layout == mode and uncertainties.coverage == (0.9 if "coverage" in line else 0.95)
+    assert uncertainties.layout == mode
+    assert uncertainties.coverage == (0.9 if "coverage" in line else 0.95)
 
 
-@pytest.mark.parametrize(("line", "words"), [
-    ("coefficient = 0.01", ("text such as",)), ('coefficient = "1 Pa"', ("percentage",)), ('coefficient = "-1 %"', ("zero or more",)),
-    ('coefficient = "±1 % (k=2)"', ("both limits",)), ('coefficient = "1 % (n=2)"', ("(k=2)",)), ('coefficient = "1 % (k=0)"', ("(k=2)",)),
-    ('coefficient = "one"', ("terms such as",)), ('coefficient = "1 % ± 0.5 %"', ("±",)), ('temperature = "2"', ("no unit",)),
-    ('temperature = "2 Pa"', ("unit of pressure",)), ('position = "1 %"', ("not a percentage",)), ('yaw = "1 %"', ("not a percentage",)),
-    ('differential_pressure = {resolution = "±0.1 Pa"}', ("full step",)), ('differential_pressure = {resolution = "1 %"}', ("full step",)),
-    ('differential_pressure = {calibratoin = "1 %"}', ("perhaps calibration",)), ("coverage = 95", ("between 0.5 and 1",)),
-    ("coverage = 0.5", ("between 0.5 and 1",)), ('coverage = "95 %"', ("bare number",)), ('covrage = 0.9', ("perhaps coverage",)),
-    ('moisture = "0.5 %"', ("relative humidity, not moisture",)), ('oxygen = "0.5 %"', ("no oxygen",)), ('density = "1 %"', ("no density",)),
-    ('layout = "1 Pa"', ("percentage",)), ('layout = "0.01"', ("percentage",)),
-])
+@pytest.mark.parametrize(
+    ("line", "words"),
+    [
+        ("coefficient = 0.01", ("text such as",)),
+        ('coefficient = "1 Pa"', ("percentage",)),
+        ('coefficient = "-1 %"', ("zero or more",)),
+        ('coefficient = "±1 % (k=2)"', ("both limits",)),
+        ('coefficient = "1 % (n=2)"', ("(k=2)",)),
+        ('coefficient = "1 % (k=0)"', ("(k=2)",)),
+        ('coefficient = "one"', ("terms such as",)),
+        ('coefficient = "1 % ± 0.5 %"', ("±",)),
+        ('temperature = "2"', ("no unit",)),
+        ('temperature = "2 Pa"', ("unit of pressure",)),
+        ('position = "1 %"', ("not a percentage",)),
+        ('yaw = "1 %"', ("not a percentage",)),
+        ('differential_pressure = {resolution = "±0.1 Pa"}', ("full step",)),
+        ('differential_pressure = {resolution = "1 %"}', ("full step",)),
+        ('differential_pressure = {calibratoin = "1 %"}', ("perhaps calibration",)),
+        ("coverage = 95", ("between 0.5 and 1",)),
+        ("coverage = 0.5", ("between 0.5 and 1",)),
+        ('coverage = "95 %"', ("bare number",)),
+        ("covrage = 0.9", ("perhaps coverage",)),
+        ('moisture = "0.5 %"', ("relative humidity, not moisture",)),
+        ('oxygen = "0.5 %"', ("no oxygen",)),
+        ('density = "1 %"', ("no density",)),
+        ('layout = "1 Pa"', ("percentage",)),
+        ('layout = "0.01"', ("percentage",)),
+    ],
+)
 def test_uncertainties_that_say_nothing_clear_are_refused(write, line, words):
     refuse(write(uncertainty=line), TraverseError, "[uncertainty]", *words)
 
@@ -487,7 +632,8 @@ def test_uncertainties_that_say_nothing_clear_are_refused(write, line, words):
 def test_terms_of_one_input_have_rows_of_their_own(write):
     job = load(write(uncertainty='static = "1 Pa + 2 Pa"\ndifferential_pressure = {calibration = "1 % + 1 Pa"}'))
     keys = [(component.input, component.kind) for component in job.uncertainties.components]
-    assert len(set(keys)) == 4 and ("differential_pressure", "calibration") in keys
+    assert len(set(keys)) == 4
+    assert ("differential_pressure", "calibration") in keys
 
 
 def test_every_input_has_a_dimension_that_units_know():
@@ -496,14 +642,18 @@ def test_every_input_has_a_dimension_that_units_know():
 
 # --- setup and folders -------------------------------------------------------------------------------------------------
 
+
 def test_a_plan_needs_no_readings_gas_conditions_or_pitot(write):
     setup = load_setup(write(None, gas=None, conditions=None, pitot=None, readings=None))
-    assert setup.layout.size == 12 and (setup.gas, setup.conditions, setup.pitot, setup.design) == (None, None, None, None)
+    assert setup.layout.size == 12
+    assert (setup.gas, setup.conditions, setup.pitot, setup.design) == (None, None, None, None)
 
 
 def test_a_plan_takes_what_is_there(write):
     setup = load_setup(write(None, design='actual_flow = "1 m3/s"', readings='file = "later.csv"'))
-    assert setup.pitot.coefficient == 1.0 and setup.gas.humidity == "relative_humidity" and setup.design.actual_flow.value == 1.0
+    assert setup.pitot.coefficient == 1.0
+    assert setup.gas.humidity == "relative_humidity"
+    assert setup.design.actual_flow.value == 1.0
     assert load_setup(write(None, pitot='type = "s-type"')).pitot is None
 
 

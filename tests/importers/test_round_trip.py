@@ -34,10 +34,18 @@ def shown(value: float, digits: int, decimal: str, group: str) -> str:
 
 @settings(max_examples=120, deadline=None)
 @given(
-    values=st.lists(st.integers(-20000, 900000), min_size=12, max_size=12), delimiter=st.sampled_from([",", ";", "\t", "|"]),
-    decimal=st.sampled_from([".", ","]), encoding=st.sampled_from(ENCODINGS), pressure=st.sampled_from(PRESSURES),
-    temperature=st.sampled_from(TEMPERATURES), head=st.sampled_from(HEADS), group=st.sampled_from(GROUPS),
-    junk=st.integers(0, 5), end=st.sampled_from(["\n", "\r\n", "\r"]), units_row=st.booleans(), order=st.permutations(range(12)),
+    values=st.lists(st.integers(-20000, 900000), min_size=12, max_size=12),
+    delimiter=st.sampled_from([",", ";", "\t", "|"]),
+    decimal=st.sampled_from([".", ","]),
+    encoding=st.sampled_from(ENCODINGS),
+    pressure=st.sampled_from(PRESSURES),
+    temperature=st.sampled_from(TEMPERATURES),
+    head=st.sampled_from(HEADS),
+    group=st.sampled_from(GROUPS),
+    junk=st.integers(0, 5),
+    end=st.sampled_from(["\n", "\r\n", "\r"]),
+    units_row=st.booleans(),
+    order=st.permutations(range(12)),
 )
 def test_the_same_values_come_back(
     values, delimiter, decimal, encoding, pressure, temperature, head, group, junk, end, units_row, order
@@ -72,8 +80,12 @@ SAMPLE = "run;line;point;dp [Pa];temp [degC];status\n" + "".join(
 )
 
 
+REASONS: list[str] = []
+
+
 def survive(job: bytes, readings: bytes) -> None:
-    """Load; nothing but the house's own errors may come out."""
+    """Load; nothing but the house's own errors may come out, and each says something."""
+    REASONS.clear()
     with tempfile.TemporaryDirectory() as folder:
         path = Path(folder) / "job.toml"
         path.write_bytes(job)
@@ -82,7 +94,8 @@ def survive(job: bytes, readings: bytes) -> None:
             try:
                 function(path)
             except TraverseError as problem:
-                assert str(problem)
+                REASONS.append(str(problem))
+    assert all(REASONS)
 
 
 @settings(max_examples=150, deadline=None)
@@ -97,10 +110,29 @@ def test_damaged_readings(data):
     content = bytearray(SAMPLE.encode())
     for _ in range(data.draw(st.integers(1, 4))):
         place = data.draw(st.integers(0, len(content) - 1))
-        content[place:place + data.draw(st.integers(0, 3))] = data.draw(st.sampled_from([
-            b"", b"\x00", b"\xff", b'"', b";", b"\n", b"<", b"1e9", b"-", b",", b"OBS", b"\xc2\xa0", b"e400", b"=", b"9" * 400, b"\xe2\x88\x92",
-        ]))
-    survive(job_text().encode(), bytes(content[:data.draw(st.integers(1, len(content)))]))
+        content[place : place + data.draw(st.integers(0, 3))] = data.draw(
+            st.sampled_from(
+                [
+                    b"",
+                    b"\x00",
+                    b"\xff",
+                    b'"',
+                    b";",
+                    b"\n",
+                    b"<",
+                    b"1e9",
+                    b"-",
+                    b",",
+                    b"OBS",
+                    b"\xc2\xa0",
+                    b"e400",
+                    b"=",
+                    b"9" * 400,
+                    b"\xe2\x88\x92",
+                ]
+            )
+        )
+    survive(job_text().encode(), bytes(content[: data.draw(st.integers(1, len(content)))]))
 
 
 @settings(max_examples=150, deadline=None)
@@ -110,15 +142,45 @@ def test_damaged_job_files(data):
     content = bytearray(job_text(more).encode())
     for _ in range(data.draw(st.integers(1, 3))):
         place = data.draw(st.integers(0, len(content) - 1))
-        content[place:place + data.draw(st.integers(0, 6))] = data.draw(st.sampled_from([
-            b"", b"\x00", b"\xff", b'"', b"[", b"]", b"=", b"1", b"-", b"1e400", b"{}", b"[]", b"true", b"0", b'"\n', b"9" * 400, b"nan", b"inf",
-        ]))
+        content[place : place + data.draw(st.integers(0, 6))] = data.draw(
+            st.sampled_from(
+                [
+                    b"",
+                    b"\x00",
+                    b"\xff",
+                    b'"',
+                    b"[",
+                    b"]",
+                    b"=",
+                    b"1",
+                    b"-",
+                    b"1e400",
+                    b"{}",
+                    b"[]",
+                    b"true",
+                    b"0",
+                    b'"\n',
+                    b"9" * 400,
+                    b"nan",
+                    b"inf",
+                ]
+            )
+        )
     survive(bytes(content), SAMPLE.encode())
 
 
 VALUES = st.recursive(
-    st.one_of(st.booleans(), st.integers(-(10**400), 10**400), st.floats(), st.text(max_size=6), st.sampled_from(["1 m", "1 Pa", "5 %", "custom"])),
-    lambda inner: st.lists(inner, max_size=2) | st.dictionaries(st.sampled_from(["depth", "weight", "line", "calibration"]), inner, max_size=2),
+    st.one_of(
+        st.booleans(),
+        st.integers(-(10**400), 10**400),
+        st.floats(),
+        st.text(max_size=6),
+        st.sampled_from(["1 m", "1 Pa", "5 %", "custom"]),
+    ),
+    lambda inner: (
+        st.lists(inner, max_size=2)
+        | st.dictionaries(st.sampled_from(["depth", "weight", "line", "calibration"]), inner, max_size=2)
+    ),
     max_leaves=4,
 )
 
@@ -131,7 +193,7 @@ def test_any_value_at_any_key(data):
     table = data.draw(st.sampled_from([*SCHEMA, "run"]))
     known = [*SCHEMA.get(table, {}), "name", "coverage", "coefficient", "layout"]
     key, value = data.draw(st.sampled_from(known)), data.draw(VALUES)
-    tables = {name: body for name, body in PARTS.items()}
+    tables = dict(PARTS.items())
     own = "\n".join(row for row in tables.get(table, "").splitlines() if row.split(" = ")[0] != key)
     tables[table] = f"{own}\n{key} = {toml(value)}\n"
     body = "".join(f"[{name}]\n{text}\n" if name != "run" else f"[[run]]\n{text}\n" for name, text in tables.items())

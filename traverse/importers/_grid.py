@@ -19,8 +19,8 @@ from traverse.units import Unit, lookup, unit
 
 NUMERIC = frozenset(name for name, dimension in COLUMNS.items() if dimension)
 _STATISTICS = re.compile(
-    r"(total|sum|average|avg|mean|min|minimum|max|maximum|std\.?(?:\s*dev\.?)?|st\.?\s*dev\.?|standard deviation|summe|mittel|mittelwert|"
-    r"durchschnitt|gesamt|somme|moyenne|suma|promedio|media)s?"
+    r"(total|sum|average|avg|mean|min|minimum|max|maximum|std\.?(?:\s*dev\.?)?|st\.?\s*dev\.?|standard deviation|"
+    r"summe|mittel|mittelwert|durchschnitt|gesamt|somme|moyenne|suma|promedio|media)s?"
 )
 _FILLER = r"(run|line|port|point|points|value|values|of|all|test|traverse|readings?|lines|ports|[a-z]|\d+)"
 _FOOTER = re.compile(rf"(?:{_FILLER}[\s:.\-]+)*{_STATISTICS.pattern}(?:[\s:.=\-]+(?:{_FILLER}|{_STATISTICS.pattern}))*[\s:.=]*")

@@ -14,6 +14,7 @@ Decimal = Literal[".", ","]
 DELIMITERS: tuple[str, ...] = ("\t", ";", ",", "|")
 # Spaces (also no-break, thin, narrow no-break) and apostrophes that group digits by threes.
 _GROUP = " \u00a0\u2009\u202f'\u2019"
+LONGEST = 60  # characters; no number that anybody reads off a gauge is longer
 _SIGN = "+\\-\u2212\u2013"
 _TOKEN = re.compile(rf"[{_SIGN}]?\s?[\d.,{_GROUP}]*\d[\d.,]*(?:[eE][{_SIGN}]?\d+)?\Z")
 _PLAIN = {
@@ -69,7 +70,7 @@ def _strip(cell: str) -> str:
 
 def is_number(text: str) -> bool:
     """Return whether a cell looks like a number with either decimal sign."""
-    return _TOKEN.match(text) is not None
+    return len(text) <= LONGEST and _TOKEN.match(text) is not None
 
 
 def number(text: str, decimal: str) -> float | None:
@@ -82,6 +83,8 @@ def number(text: str, decimal: str) -> float | None:
     >>> number("12,5", ".") is None
     True
     """
+    if len(text) > LONGEST:
+        return None
     match = re.match(rf"([{_SIGN}]?)\s?(.*?)([eE][{_SIGN}]?\d+)?\Z", text, re.S)
     assert match is not None, "every text matches"
     sign, digits, exponent = match.groups()
