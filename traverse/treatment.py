@@ -11,6 +11,7 @@ from traverse.chain import Setting
 from traverse.errors import DomainError, ReadingError
 from traverse.methods import Method
 from traverse.model import COMPONENTS, UNREAD, Array, Corrections, Job, Layout, Policies, Readings, Reference, Run, frozen
+from traverse.physics.water import saturation_pressure
 
 Flags = npt.NDArray[np.bool_]
 # Blockage of the section by a cylindrical stem: relative velocity correction per share of the area that the stem
@@ -189,10 +190,13 @@ def refuse_impossible(quantities: dict[str, Array], run: Run) -> None:
     gas = run.gas
     if gas.humidity != "none" and not np.isfinite(quantities["moisture"]):
         stated = gas.water.text if gas.water else "saturated gas"
+        temperature, pressure = float(quantities["temperature"]), float(quantities["absolute_pressure"])
+        limit = min(1.0, float(saturation_pressure(np.float64(temperature))) / pressure)
         raise DomainError(
-            f"{gas.humidity.replace('_', ' ')} of {stated} is not possible at "
-            f"{float(quantities['temperature']) - 273.15:.1f} degC and {float(quantities['absolute_pressure']):.0f} Pa",
-            where=f"run {run.name}, [gas] {gas.humidity}", expected="no more water than saturation holds",
+            f"{gas.humidity.replace('_', ' ')} of {stated} is not possible at {temperature - 273.15:.1f} degC and "
+            f"{pressure:.0f} Pa", where=f"run {run.name}, [gas] {gas.humidity}",
+            expected=f"at most saturation, {100 * limit:.3g} % by volume",
+            how="for a gas with droplets say saturated = true" if gas.humidity == "moisture" and limit < 1.0 else "",
         )
     for name in ("density", "mean_velocity", "actual_flow"):
         if not np.isfinite(quantities[name]):

@@ -444,7 +444,8 @@ def test_custom_points_in_three_ways(write, tmp_path, body):
 
 
 def test_custom_points_from_the_readings(write):
-    text = "line,point,x [mm],y [mm],weight,dp [Pa]\nP,1,100,0,0.3,20.5\nP,2,-100,0,0.3,21.5\nQ,1,0,100,0.2,22.5\nQ,2,0,-100,0.2,23.5\n"
+    rows = ("P,1,100,0,0.3,20.5", "P,2,-100,0,0.3,21.5", "Q,1,0,100,0.2,22.5", "Q,2,0,-100,0.2,23.5")
+    text = "\n".join(["line,point,x [mm],y [mm],weight,dp [Pa]", *rows])
     job = load(write(text, layout='rule = "custom"'))
     assert job.layout.x == pytest.approx([0.1, -0.1, 0, 0])
     assert job.layout.weight == pytest.approx([0.3, 0.3, 0.2, 0.2])

@@ -667,3 +667,7 @@ def test_a_position_with_a_unit_is_a_depth_and_not_a_label():
     assert recognise(0, "Position [mm]").name == "depth"
     assert recognise(0, "Position").name == "point"
     assert recognise(0, "Line [mm]") is None
+
+
+def test_a_cell_of_a_hundred_thousand_digits_is_refused_at_once(write):
+    refuse(write(table().replace("20.5", "9" * 100_000 + "x")), "readings.csv:3", kind=ReadingError)

@@ -138,7 +138,8 @@ def test_damaged_readings(data):
 @settings(max_examples=150, deadline=None)
 @given(st.data())
 def test_damaged_job_files(data):
-    more = '[[run]]\nname = "1"\nstatic = "1 Pa"\n[uncertainty]\ncoefficient = "±1 % + 2 % (k=2)"\nposition = "1 mm"\n[design]\nactual_flow = "1 m3/s"\n'
+    more = '[[run]]\nname = "1"\nstatic = "1 Pa"\n[uncertainty]\ncoefficient = "±1 % + 2 % (k=2)"\n'
+    more += 'position = "1 mm"\n[design]\nactual_flow = "1 m3/s"\n'
     content = bytearray(job_text(more).encode())
     for _ in range(data.draw(st.integers(1, 3))):
         place = data.draw(st.integers(0, len(content) - 1))

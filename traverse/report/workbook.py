@@ -79,9 +79,9 @@ def _fill(sheet: Worksheet, spec: SheetSpec, addresses: Addresses, named: Mappin
         cell.style = named[put.style]
         content = put.content
         if isinstance(content, Text):
-            cell.value = _CODE.sub("_x005F_", clean(content.text))
+            cell.value = _CODE.sub("_x005F_", clean(content.text)) or None
             # Set by hand: text that starts with '=' or looks like an error must stay text.
-            cell.data_type = "s"
+            cell.data_type = "s" if content.text else "n"
             if content.text[:1] in {"=", "+", "-", "@"}:
                 cell.quotePrefix = True
         elif isinstance(content, Live):
