@@ -441,6 +441,7 @@ def test_custom_points_in_three_ways(write, tmp_path, body):
     assert layout.y == pytest.approx([0, 0, 0.11, -0.11])
     assert layout.labels() == ("A1", "A2", "B1", "B2")
     assert load_setup(path).layout.depth == pytest.approx(layout.depth)
+    assert layout.findings == ()
 
 
 def test_custom_points_from_the_readings(write):
@@ -683,3 +684,17 @@ def test_missing_readings(write):
 def test_impossible_pressures_together(write):
     text = "line,point,dp [Pa],static [kPa]\n" + "".join(f"{line},{p},{p}.5,-150\n" for line in "AB" for p in range(1, 7))
     refuse(write(text), DomainError, "absolute pressure")
+
+
+def test_a_barometer_of_a_run_replaces_the_altitude(write):
+    state = 'altitude = "1600 m"\nmodel = "standard-atmosphere"\nstatic = "0 Pa"\ntemperature = "20 degC"'
+    job = load(write(two_runs(), conditions=state, more='[[run]]\nname = "2"\nbarometric = "840 hPa"\n'))
+    assert [run.conditions.barometric_source.split()[0] for run in job.runs] == ["standard", "[conditions]"]
+    assert job.runs[1].conditions.barometric.value == 84000.0
+
+
+def test_the_wall_rule_moves_equal_area_points_only(write):
+    # The wall distances of EPA Method 1 belong to its own equal-area points, not to another standard's.
+    layout = 'rule = "log-linear"\nlines = 2\npoints = 6'
+    job = load(write(job='method = "epa-2"\nunits = "si"', plane='shape = "round"\ndiameter = "200 mm"', layout=layout))
+    assert not any(job.layout.moved)

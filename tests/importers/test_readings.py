@@ -671,3 +671,22 @@ def test_a_position_with_a_unit_is_a_depth_and_not_a_label():
 
 def test_a_cell_of_a_hundred_thousand_digits_is_refused_at_once(write):
     refuse(write(table().replace("20.5", "9" * 100_000 + "x")), "readings.csv:3", kind=ReadingError)
+
+
+def test_repeats_that_are_negative_on_the_mean_stay_negative(write):
+    text = table() + "A,3,-90.5\n"
+    readings = load(write(text, readings='file = "readings.csv"\nrepeats = "mean"')).runs[0].readings
+    root = (30.5**0.5 - 90.5**0.5) / 2
+    assert readings.differential_pressure[2] == pytest.approx(-(root**2))
+    assert readings.status[2] == "negative"
+
+
+def test_the_allowed_departure_follows_the_length_of_the_line(write):
+    # 1 % of a line of 2 m is 20 mm; of one of 0.3 m, 3 mm (the least that is allowed).
+    for along, length, allowed in (("height", 300, 3.0), ("width", 2000, 20.0)):
+        depths = [length * (2 * i + 1) / 12 for i in range(6)]
+        rows = [f"{line},{d + 10:.0f},{20 + i}.5" for line in "AB" for i, d in enumerate(depths)]
+        layout = f'rule = "equal-area"\nlines = 2\npoints = 6\nalong = "{along}"'
+        plane = 'shape = "rectangle"\nwidth = "2000 mm"\nheight = "300 mm"'
+        job = load(write("line,depth [mm],dp [Pa]\n" + "\n".join(rows), plane=plane, layout=layout))
+        assert bool([f for f in job.findings if f.topic == "depths"]) == (allowed < 10)

@@ -169,7 +169,9 @@ def test_defined_names_point_at_their_cells():
     assert book.defined_names["flow"].attr_text == "'Bob''s page'!$A$4"
 
 
-@pytest.mark.parametrize("formula", ["1+1", "=T.INV.2T(0.05,3)", "=NOW()", "=RAND()", '=TEXT(1,"0")', '=HYPERLINK("a")', "=sum(1)"])
+@pytest.mark.parametrize(
+    "formula", ["1+1", "=T.INV.2T(0.05,3)", "=NOW()", "=RAND()", '=TEXT(1,"0")', '=HYPERLINK("a")', "=sum(1)"],
+)
 def test_formulas_every_program_computes_alike(formula):
     with pytest.raises(AssertionError):
         Live(formula, 1.0)
@@ -225,7 +227,7 @@ def test_foreign_text_stays_text(foreign):
     book = openpyxl.load_workbook(io.BytesIO(content))
     assert {cell.data_type for sheet in book for row in sheet.iter_rows() for cell in row} <= {"n", "s", "f", "b"}
     cell = book["Bob's page"]["A1"]
-    assert (cell.value or "").replace("_x005F_", "_") == clean(foreign).replace("_x005F_", "_")
+    assert (cell.value or "").replace("_x005F_", "_") == clean(foreign)
     assert not cell.value or cell.data_type == "s"
 
 
@@ -277,7 +279,7 @@ def test_charts_are_native_with_axes_and_points():
     assert len(series) == 2
     y = series[0].find(f"{CHART}yVal/{CHART}numRef")
     assert y.findtext(f"{CHART}f") == "'Numbers'!$C$2:$C$4"
-    assert [float(v.text) for v in y.iter(f"{CHART}v")] == [1.0, 0.1**2, 16.0]
+    assert [float(v.text) for v in y.iter(f"{CHART}v")] == pytest.approx([1.0, 0.1**2, 16.0], rel=1e-15)
     labels = bars.find(f".//{CHART}cat/{CHART}strRef")
     assert labels.findtext(f"{CHART}f") == "'Numbers'!$A$2:$A$4"
     assert [v.text for v in labels.iter(f"{CHART}v")] == ["0 boiler 3", "1 boiler 3", "2 boiler 3"]

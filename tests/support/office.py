@@ -112,5 +112,5 @@ def _same(ours: object, theirs: object, tolerance: float) -> bool:
         exact_zero = 0 in {ours, theirs}
         return math.isclose(ours, theirs, rel_tol=tolerance, abs_tol=tolerance if exact_zero else 0.0)
     # An empty text formula reads back as nothing; an error is never right, even when both have it.
-    ours, theirs = ours or "", theirs or ""
+    ours, theirs = "" if ours is None else ours, "" if theirs is None else theirs
     return isinstance(ours, str) and ours == theirs and not ours.startswith("#")

@@ -29,6 +29,7 @@ FUNCTIONS = frozenset((
 # At most 31 characters, none that stands for something in a reference, no apostrophe at either end.
 _PAGE_TITLE = re.compile(r"\A(?!')[^\x00-\x1f\[\]:*?/\\]{1,31}(?<!')\Z")
 LONGEST = 32_767
+_CUT = " [cut here]"
 _BREAK = re.compile("\r\n?")
 # Control characters, lone surrogates and the two non-characters: no XML file can hold them.
 _UNWRITABLE = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\ud800-\udfff\ufffe\uffff]")
@@ -37,7 +38,7 @@ _UNWRITABLE = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\ud800-\udfff\ufffe\uffff]"
 def clean(text: str) -> str:
     """Return text that a workbook can hold; what it cannot is replaced visibly, and more than a cell holds is cut visibly."""
     text = _UNWRITABLE.sub("\ufffd", _BREAK.sub("\n", text))
-    return text if len(text) <= LONGEST else text[: LONGEST - 12] + " [cut here]"
+    return text if len(text) <= LONGEST else text[: LONGEST - len(_CUT)] + _CUT
 
 
 @dataclass(frozen=True, slots=True)
