@@ -250,6 +250,14 @@ def test_codes_for_characters_are_not_taken_for_characters():
     assert ">_x0041_" not in sheet
 
 
+def test_spaces_are_kept_by_every_program():
+    # Also where a text is nothing but spaces, which the XML libraries of different machines mark differently.
+    part = ElementTree.fromstring(_parts(_build(_sample("   ")))["xl/worksheets/sheet1.xml"])
+    found = next(part.iter(f"{office.NAMESPACE}t"))
+    assert found.text == "   "
+    assert found.get("{http://www.w3.org/XML/1998/namespace}space") == "preserve"
+
+
 @pytest.mark.parametrize("title", ["&" * 300, "A & B", "line\nbreak", "&P&N", "14"])
 def test_the_printed_head_stays_within_bounds(title):
     part = ElementTree.fromstring(_parts(_build(_sample(), title))["xl/worksheets/sheet1.xml"])
