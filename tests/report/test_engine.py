@@ -34,6 +34,7 @@ from traverse.report.spec import (
 
 ROOT = Path(__file__).parents[2]
 CHART = "{http://schemas.openxmlformats.org/drawingml/2006/chart}"
+DRAWING = "{http://schemas.openxmlformats.org/drawingml/2006/main}"
 DATE = dt.date(2026, 10, 14)
 NASTY = (
     "=1+1", "=HYPERLINK(\"http://a.example\",\"b\")", "+1", "-2", "@SUM(1)", "\t=1", "#N/A", "#REF!", "TRUE", "1e5", "2026-01-01",
@@ -297,6 +298,12 @@ def test_series_differ_without_colour():
     chart = ElementTree.fromstring(_parts(_build(_sample()))["xl/charts/chart1.xml"])
     looks = {ElementTree.tostring(series.find(f"{CHART}marker")) for series in chart.iter(f"{CHART}ser")}
     assert len(looks) == 2
+
+
+def test_points_are_not_joined():
+    chart = ElementTree.fromstring(_parts(_build(_sample()))["xl/charts/chart2.xml"])
+    line = chart.find(f".//{CHART}ser/{CHART}spPr/{DRAWING}ln")
+    assert [child.tag for child in line] == [f"{DRAWING}noFill"]
 
 
 def test_a_square_chart_has_one_scale():

@@ -42,8 +42,9 @@ def styles() -> dict[str, NamedStyle]:
         style = NamedStyle(name=f"traverse {name}")
         style.font = Font(name="Consolas" if name == "verbatim" else FACE, size=size, bold=bold, color=colour)
         style.alignment = Alignment(
-            horizontal=side, vertical="top" if wrapped else "center", wrap_text=wrapped,
-            indent=1 if name in {"unit", "text", "faint text"} else 0,
+            horizontal=side, vertical="top", wrap_text=wrapped,
+            # Numbers keep off the words in the next column; words beside them start where units do.
+            indent=1 if side == "right" or name in {"unit", "text", "faint text"} else 0,
         )
         if fill:
             style.fill = PatternFill("solid", fgColor=fill)
