@@ -76,7 +76,7 @@ def evaluate(inputs: Mapping[str, Array], setting: Setting) -> Flow:
     matter = composition(inputs, setting, mean["temperature"], mean["pressure"])
     root = roots(inputs["differential_pressure"], signed=setting.signed) + inputs["root_shift"]
     step = _root_mean if setting.arithmetic == "root-mean" else _pointwise
-    flow = step(inputs, setting, matter, root, pressure, mean)
+    flow = step(inputs, setting, matter, root, mean)
     size = {name: inputs[name] for name in setting.dimensions}
     return _totals(flow, inputs, setting, matter, root, mean, size)
 
@@ -126,10 +126,11 @@ def _species(inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str,
 
 
 def _pointwise(
-    inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array], root: Array, pressure: Array,
+    inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array], root: Array,
     mean: Mapping[str, Array],
 ) -> dict[str, Array]:
     """Velocity at each point with the density there; docs/method.md gives the equations."""
+    pressure = inputs["barometric"] + inputs["static"]
     if setting.density_given == "at plane":
         density = inputs["density"] + 0.0 * inputs["temperature"]
     else:
@@ -153,7 +154,7 @@ def _pointwise(
 
 
 def _root_mean(
-    inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array], root: Array, pressure: Array,
+    inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array], root: Array,
     mean: Mapping[str, Array],
 ) -> dict[str, Array]:
     """Mean root with mean temperature, in the units and constants of the method (Method 2, eqs. 2-7 and 2-8)."""
@@ -240,7 +241,7 @@ def _mean(weight: Array, values: Array) -> Array:
     """Area-weighted mean, keeping the point axis with length 1 (weights sum to 1)."""
     if values.shape[-1] == 1 and weight.shape[-1] != 1:
         return values
-    return np.sum(weight * values, axis=-1, keepdims=True)
+    return np.asarray(np.sum(weight * values, axis=-1, keepdims=True))
 
 
 def _sum(values: Array) -> Array:

@@ -64,7 +64,7 @@ class OutputError(TraverseError):
 
 def nearest(word: str, known: object) -> str:
     """Return the known word that looks most like ``word``, or an empty string."""
-    import difflib  # noqa: PLC0415 - only on the way to an error message
+    import difflib
 
     names = [str(name) for name in known]  # type: ignore[attr-defined]
     found = difflib.get_close_matches(word, names, n=1, cutoff=0.6)

@@ -90,9 +90,9 @@ def _unread(
             rule[index] = "left out, weights of the others raised"
         return
     root = np.sign(pressure) * np.sqrt(np.abs(pressure))
-    for index in np.flatnonzero(unread):
-        pressure[index], names = _neighbours(index, readings, layout, unread, root)
-        rule[index] = f"from {names}"
+    for place in np.flatnonzero(unread).tolist():
+        pressure[place], names = _neighbours(place, readings, layout, unread, root)
+        rule[place] = f"from {names}"
 
 
 def _neighbours(

@@ -173,9 +173,9 @@ def lookup(text: str) -> Unit | None:
         return UNITS[at]
     folded = _fold(plain)
     if "@" in folded:
-        for symbol in UNITS:
+        for symbol, candidate in UNITS.items():
             if "@" in symbol and symbol.lower() == folded:
-                return UNITS[symbol]
+                return candidate
         return None
     name = _SPELLINGS.get(folded) or _FOLDED.get(folded)
     return UNITS[name] if name else None

@@ -303,7 +303,8 @@ def test_series_differ_without_colour():
 def test_points_are_not_joined():
     chart = ElementTree.fromstring(_parts(_build(_sample()))["xl/charts/chart2.xml"])
     line = chart.find(f".//{CHART}ser/{CHART}spPr/{DRAWING}ln")
-    assert [child.tag for child in line] == [f"{DRAWING}noFill"]
+    assert line.find(f"{DRAWING}noFill") is not None
+    assert line.find(f"{DRAWING}solidFill") is None
 
 
 def test_a_square_chart_has_one_scale():
@@ -316,6 +317,21 @@ def test_a_square_chart_has_one_scale():
     specs[1].charts[1] = dataclasses.replace(chart, x_max=chart.x_max + 1)
     with pytest.raises(AssertionError, match="one scale"):
         _build(specs)
+
+
+def test_rows_are_high_enough_for_their_text():
+    sheet = SheetSpec("A")
+    sheet.put(1, 1, Text("Title"), style="title")
+    sheet.put(2, 1, Text("one line"), style="text")
+    sheet.put(3, 1, Text("many words that do not fit into one line " * 3), style="text")
+    sheet.put(4, 1, Text("many words that do not fit into one line " * 3), style="text", span=12)
+    book = openpyxl.load_workbook(io.BytesIO(_build([sheet])))
+    heights = [book["A"].row_dimensions[row].height for row in (1, 2, 3, 4)]
+    assert heights[0] >= 1.3 * book["A"]["A1"].font.size
+    assert heights[1] is None
+    # 123 characters in a column of 12: at least ten lines of 9.5 points; over twelve columns one line.
+    assert heights[2] >= 10 * 9.5
+    assert heights[3] is None
 
 
 def test_pages_print_one_page_wide_with_their_heads():
@@ -379,7 +395,7 @@ def _with_wrong_value(content: bytes, address: str, value: str) -> bytes:
                 root = ElementTree.fromstring(part)
                 cell = next(cell for cell in root.iter(f"{office.NAMESPACE}c") if cell.get("r") == address)
                 cell.find(f"{office.NAMESPACE}v").text = value
-                part = ElementTree.tostring(root)  # noqa: PLW2901
+                part = ElementTree.tostring(root)
             target.writestr(name, part)
     return out.getvalue()
 

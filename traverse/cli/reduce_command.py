@@ -95,7 +95,8 @@ def _progress(paths: Sequence[Path], *, quiet: bool) -> Iterable[Path]:
     if quiet or len(paths) < 2:
         yield from paths
         return
-    with click.progressbar(paths, label="reducing", file=click.get_text_stream("stderr")) as bar:
+    progressbar: Any = click.progressbar
+    with progressbar(paths, label="reducing", file=click.get_text_stream("stderr")) as bar:
         yield from bar
 
 

@@ -92,7 +92,7 @@ def _round(
     depth, moved = move_off_wall(fraction * width, width, least)
     depths, shares = np.tile(depth, lines), np.tile(share / lines, lines)
     x, y = diameters(width, depths, np.repeat(angles, points))
-    notes = ()
+    notes: tuple[str, ...] = ()
     if moved.any():
         notes = (f"{int(moved.sum())} points on each line moved out to {least * 1000:.1f} mm from the wall; "
                  "where two fall together both are read and both count",)

@@ -112,5 +112,5 @@ def _refuse(
     unique, counts = np.unique(places, axis=0, return_counts=True)
     if counts.max() > 1:
         twice = unique[np.argmax(counts)]
-        both = [f"{line[i]}{point[i]}" for i in np.flatnonzero((places == twice).all(axis=1))]
+        both = [f"{line[i]}{point[i]}" for i in np.flatnonzero((places == twice).all(axis=1)).tolist()]
         raise LayoutError(f"points {' and '.join(both)} lie in one place", where=_WHERE, expected="different places")

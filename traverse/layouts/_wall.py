@@ -27,4 +27,4 @@ def log_mean_distance(inner: float, outer: float) -> float:
 
 def mean_distance(inner: float, outer: float) -> float:
     """Return the area mean of the wall distance 1 - r between two area fractions."""
-    return 1.0 - 2.0 / 3.0 * (outer**1.5 - inner**1.5) / (outer - inner)
+    return 1.0 - 2.0 / 3.0 * (math.pow(outer, 1.5) - math.pow(inner, 1.5)) / (outer - inner)

@@ -101,7 +101,7 @@ def air_composition(moisture: npt.ArrayLike) -> dict[str, Array]:
 def ratio_of_specific_heats(composition: Mapping[str, Array], temperature: npt.ArrayLike) -> Array:
     """Return cp/cv of an ideal-gas mixture: cp/R over cp/R - 1, with cp/R summed over the mole fractions."""
     t = np.asarray(temperature, dtype=np.float64)
-    heat = 0.0
+    heat = np.zeros(())
     for name, fraction in composition.items():
         a = HEAT_CAPACITY[name]
         heat = heat + fraction * (a[0] + t * (a[1] + t * (a[2] + t * (a[3] + t * a[4]))))
@@ -115,7 +115,7 @@ def viscosity(composition: Mapping[str, Array], temperature: npt.ArrayLike) -> A
     kiln and turbine gas at 60 to 450 degC.
     """
     t = np.asarray(temperature, dtype=np.float64)
-    top, bottom = 0.0, 0.0
+    top, bottom = np.zeros(()), np.zeros(())
     for name, fraction in composition.items():
         mu0, s = VISCOSITY[name]
         root = np.sqrt(MOLAR_MASS[name])

@@ -31,10 +31,12 @@ def compressibility_factor(
     k^2 = ((1 + x)^a - 1) / (a x), x = impact over static pressure, a = (ratio - 1) / ratio: the energy equation of
     isentropic flow of an ideal gas, exact. Evaluated through log1p and expm1, so that small x keeps all digits.
     """
+    static = np.asarray(static_pressure, dtype=np.float64)
+    gamma = np.asarray(ratio_of_specific_heats, dtype=np.float64)
     with np.errstate(divide="ignore", invalid="ignore"):
-        x = np.asarray(impact_pressure, dtype=np.float64) / static_pressure
-        x = np.where((x >= 0.0) & (np.asarray(static_pressure) > 0.0), x, np.nan)
-        a = (np.asarray(ratio_of_specific_heats) - 1.0) / ratio_of_specific_heats
+        x = np.asarray(impact_pressure, dtype=np.float64) / static
+        x = np.where((x >= 0.0) & (static > 0.0), x, np.nan)
+        a = (gamma - 1.0) / gamma
         square = np.expm1(a * np.log1p(x)) / (a * np.where(x == 0.0, 1.0, x))
     return np.asarray(np.where(x == 0.0, 1.0, np.sqrt(square)))
 
@@ -63,9 +65,10 @@ def velocity(
         [m/s]; NaN for a negative differential pressure or a density that is not positive.
     """
     pressure = np.asarray(differential_pressure, dtype=np.float64)
+    factor = np.asarray(coefficient, dtype=np.float64)
     with np.errstate(divide="ignore", invalid="ignore"):
-        speed = coefficient * np.sqrt(2.0 * pressure / density)
+        speed = factor * np.sqrt(2.0 * pressure / np.asarray(density, dtype=np.float64))
     if static_pressure is None:
         return np.asarray(speed)
-    impact = np.square(coefficient) * pressure
+    impact = np.square(factor) * pressure
     return np.asarray(speed * compressibility_factor(impact, static_pressure, ratio_of_specific_heats))

@@ -104,13 +104,14 @@ def _series(book: Workbook, series: Series, number: int, addresses: Addresses) -
     found.yVal = NumDataSource(numRef=_numbers(series.y, addresses))
     colour = "222222" if series.style == "outline" else COLOURS[number % len(COLOURS)]
     found.smooth = False
+    line = found.graphicalProperties.line
+    line.prstDash = "solid" if series.style in {"points", "outline"} else DASHES[number % len(DASHES)]
     if series.style == "points":
         # One kind of filling only: with a colour beside it, programs draw the line all the same.
-        found.graphicalProperties.line = LineProperties(noFill=True)
+        line.noFill = True
     else:
-        width = int((2.0 if series.style == "outline" else 1.5) * EMU_PER_POINT)
-        dash = "solid" if series.style == "outline" else DASHES[number % len(DASHES)]
-        found.graphicalProperties.line = LineProperties(solidFill=colour, w=width, prstDash=dash)
+        line.solidFill = colour
+        line.width = int((2.0 if series.style == "outline" else 1.5) * EMU_PER_POINT)
     if series.style in {"points", "line+points"}:
         found.marker.symbol = MARKERS[number % len(MARKERS)]
         found.marker.size = 6

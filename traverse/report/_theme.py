@@ -32,6 +32,8 @@ _STYLES: dict[str, tuple[str, str | None, bool, float, bool, str, bool]] = {
     "attention": ("FF7A4B00", "FFFDF1DA", True, 9.5, True, "left", False),
 }
 
+# Rows of large text, in points: not every program heightens them by itself.
+HEIGHTS = {"title": 24.0, "subtitle": 17.0}
 WRAPPED = frozenset(name for name, row in _STYLES.items() if row[4])
 
 

@@ -67,10 +67,11 @@ def _plain(axes: Axes) -> None:
 def outline(plane_section: Section, scale: float) -> Patch:
     """Return the inner wall of a section as a patch, in the unit given by its scale."""
     width, height = plane_section.width * scale, plane_section.height * scale
-    style = {"fill": False, "edgecolor": INK, "linewidth": 2.0, "zorder": 4}
     if plane_section.shape == "round":
-        return Circle((0.0, 0.0), width / 2.0, **style)  # type: ignore[arg-type]
-    return Rectangle((-width / 2.0, -height / 2.0), width, height, **style)  # type: ignore[arg-type]
+        return Circle((0.0, 0.0), width / 2.0, fill=False, edgecolor=INK, linewidth=2.0, zorder=4)
+    return Rectangle(
+        (-width / 2.0, -height / 2.0), width, height, fill=False, edgecolor=INK, linewidth=2.0, zorder=4
+    )
 
 
 def field(result: RunResult, layout: Layout, plane_section: Section, size: int = 181) -> tuple[Array, Array, Array]:

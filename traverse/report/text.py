@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Sequence
 
 from traverse import methods
@@ -79,7 +80,7 @@ def _below(result: Reduction) -> list[str]:
     exact = difference_from_exact(result)
     if exact:
         lines.append(exact)
-    counts = {status: 0 for status in ("pass", "fail", "not evaluated", "not applicable")}
+    counts = dict.fromkeys(("pass", "fail", "not evaluated", "not applicable"), 0)
     for _, check in result.all_checks():
         counts[check.status] += 1
     lines.append("Checks: " + ", ".join(f"{count} {status}" for status, count in counts.items()) + ".")
@@ -95,9 +96,9 @@ def difference_from_exact(result: Reduction) -> str:
     for name, label in (("actual_flow", "actual flow"), ("dry_standard_flow", "dry standard flow")):
         own = [item.value(name) for item in result.runs]
         exact = [item.exact.get(name) for item in result.runs]
-        if all(value is not None for value in exact) and sum(v for v in exact if v):
-            ratio = sum(own) / sum(v for v in exact if v is not None) - 1
-            pairs.append(f"{label} {100 * ratio:+.2f} %")
+        total = math.fsum(value for value in exact if value is not None)
+        if None not in exact and total:
+            pairs.append(f"{label} {100 * (math.fsum(own) / total - 1):+.2f} %")
     if not pairs:
         return ""
     return f"{result.job.method} against exact physics on the same readings: {', '.join(pairs)}."

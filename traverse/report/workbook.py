@@ -95,9 +95,17 @@ def _fill(sheet: Worksheet, spec: SheetSpec, addresses: Addresses, named: Mappin
             cell.comment = Comment(note, "traverse", height=60 + 18 * (len(note) // 40), width=260)
         if (row, column) in spec.spans:
             sheet.merge_cells(start_row=row, start_column=column, end_row=row, end_column=column + spec.spans[row, column] - 1)
+    _sizes(sheet, spec)
+
+
+def _sizes(sheet: Worksheet, spec: SheetSpec) -> None:
+    """Set the widths of the columns and the heights of the rows."""
     last = max((column for _, column in spec.cells), default=1)
     for column in range(1, last + 1):
         sheet.column_dimensions[get_column_letter(column)].width = spec.widths.get(column, DEFAULT_WIDTH)
+    for (row, _), put in spec.cells.items():
+        if put.style in _theme.HEIGHTS:
+            sheet.row_dimensions[row].height = _theme.HEIGHTS[put.style]
     for row, lines in _lines(spec).items():
         if lines > 1:
             sheet.row_dimensions[row].height = LINE_HEIGHT * lines + 2.0

@@ -13,6 +13,7 @@ import numpy as np
 
 from traverse.model import Array, Component, Job, Run
 from traverse.result import RunResult
+from traverse.treatment import Flags
 
 # Job-file input -> the chain's input that it moves. Inputs not listed move the chain's input of the same name.
 _TARGET = {
@@ -51,18 +52,18 @@ class Row:
     directions: tuple[Direction, ...]
 
 
-def rows(job: Job, run: Run, inputs: Mapping[str, Array], counted: Array) -> tuple[Row, ...]:
+def rows(job: Job, run: Run, inputs: Mapping[str, Array], counted: Flags) -> tuple[Row, ...]:
     """Return the budget rows of one run, in the order of the job file, then those the readings bring themselves."""
     stated = job.uncertainties.components if job.uncertainties else ()
     found: list[Row] = []
     for component in stated:
         names = job.plane.section.dimensions if component.input == "dimensions" else (component.input,)
-        found.extend(_row(component, name, job, run, inputs, counted) for name in names)
+        found.extend(_row(component, name, job, inputs, counted) for name in names)
     found.extend(_from_readings(job, run, counted))
     return tuple(row for row in found if row.directions)
 
 
-def _row(component: Component, name: str, job: Job, run: Run, inputs: Mapping[str, Array], counted: Array) -> Row:
+def _row(component: Component, name: str, job: Job, inputs: Mapping[str, Array], counted: Flags) -> Row:
     target = _TARGET.get(name, name)
     base = np.asarray(inputs[target], dtype=np.float64)
     if name == "moisture" and component.relative:
@@ -81,7 +82,7 @@ def _row(component: Component, name: str, job: Job, run: Run, inputs: Mapping[st
     )
 
 
-def _directions(target: str, size: Array, shared: bool, counted: Array) -> Iterator[Direction]:
+def _directions(target: str, size: Array, shared: bool, counted: Flags) -> Iterator[Direction]:
     if shared:
         yield Direction(target=target, deviation=size)
         return
@@ -92,7 +93,7 @@ def _directions(target: str, size: Array, shared: bool, counted: Array) -> Itera
             yield Direction(target=target, deviation=deviation)
 
 
-def _from_readings(job: Job, run: Run, counted: Array) -> Iterator[Row]:
+def _from_readings(job: Job, run: Run, counted: Flags) -> Iterator[Row]:
     """Rows that come from the readings themselves, once the job states uncertainties at all."""
     if job.uncertainties is None:
         return
@@ -107,7 +108,7 @@ def _from_readings(job: Job, run: Run, counted: Array) -> Iterator[Row]:
         yield _point_row("averaging", size, counted, "standard error of the logged mean")
 
 
-def _point_row(kind: str, size: Array, counted: Array, stated: str) -> Row:
+def _point_row(kind: str, size: Array, counted: Flags, stated: str) -> Row:
     used = size[counted & (size > 0)]
     return Row(
         input="differential_pressure", kind=kind, shared=False,

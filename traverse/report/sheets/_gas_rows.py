@@ -97,7 +97,7 @@ def _wet_bulb(ledger: Ledger, run: RunView) -> None:
     top = f"(({{wb.latent}}-{{wb.slope}}*{tw})*{{Ws}}-{{wb.heat}}*({td}-{tw}))"
     bottom = f"({{wb.latent}}+{{wb.vapour}}*{td}-{{wb.liquid}}*{tw})"
     ratio = float(moist_air.humidity_ratio_from_wet_bulb(
-        np.float64(wet), np.float64(run.mean["temperature"]), np.float64(run.mean["pressure"])
+        np.array(wet), np.array(run.mean["temperature"]), np.array(run.mean["pressure"])
     ))
     ledger.live("W", "Humidity ratio", f"{top}/{bottom}", ratio, "kg/kg", fmt="0.000000")
 
@@ -150,7 +150,7 @@ def _ratio(ledger: Ledger, run: RunView) -> None:
         source = "as stated" if run.setting.ratio_of_specific_heats is not None else "air and given gas"
         ledger.number("gamma", "Ratio of specific heats", ratio, "1", source)
     else:
-        wet = gas.wet_composition(*(run.input(name) for name in _SPECIES), run.matter["moisture"])
+        wet = run.composition()
         total, t = [], run.mean["temperature"]
         for name, fraction in wet.items():
             a = gas.HEAT_CAPACITY[name]

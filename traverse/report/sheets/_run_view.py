@@ -7,7 +7,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from traverse.chain import Setting, composition, ratio_of_specific_heats, roots
-from traverse.model import Array
+from traverse.model import COMPONENTS, Array
+from traverse.physics.gas import wet_composition
 from traverse.report.sheets._view import View
 from traverse.result import RunResult
 from traverse.treatment import inputs, setting
@@ -46,6 +47,11 @@ class RunView:
             matter={name: float(np.ravel(value)[0]) for name, value in matter.items()},
             ratio=float(np.ravel(ratio_of_specific_heats(arrays, equations, matter, np.array([mean["temperature"]])))[0]),
         )
+
+    def composition(self) -> dict[str, Array]:
+        """Return the wet mole fractions of a flue gas by species."""
+        oxygen, carbon_dioxide, carbon_monoxide, sulfur_dioxide = (self.input(name) for name in COMPONENTS)
+        return wet_composition(oxygen, carbon_dioxide, carbon_monoxide, sulfur_dioxide, self.matter["moisture"])
 
     def input(self, name: str) -> float:
         """Return an input that holds for the whole run."""

@@ -11,8 +11,7 @@ from traverse.quantities import BY_NAME
 from traverse.report.sheets._ledger import Ledger
 from traverse.report.sheets._run_view import RunView
 from traverse.report.sheets._view import View
-
-_SPECIES = ("oxygen", "carbon_dioxide", "carbon_monoxide", "sulfur_dioxide")
+from traverse.units import UNITS
 
 
 def total_rows(ledger: Ledger, view: View, run: RunView) -> None:
@@ -60,8 +59,6 @@ def _root_mean(ledger: Ledger, run: RunView) -> None:
     """Put the method's own arithmetic: its units, its offsets, its constant."""
     own = run.setting.constants
     assert own is not None, "root-mean arithmetic has constants"
-    from traverse.units import UNITS
-
     mercury, head, speed = UNITS[own.pressure], UNITS[own.head], UNITS[own.velocity]
     ledger.number("f.mercury", f"  {own.pressure} in Pa", mercury.factor, "Pa", mercury.source)
     ledger.number("f.head", f"  {own.head} in Pa", head.factor, "Pa", head.source)
@@ -114,14 +111,14 @@ def _reynolds(ledger: Ledger, view: View, run: RunView) -> None:
         ledger.live("D", "Hydraulic diameter", "2*{width}*{height}/({width}+{height})",
                     float(sections.hydraulic_diameter("rectangle", size)), "m", "four times the area over the perimeter")
     else:
-        ledger.live("D", "Hydraulic diameter", "2*SQRT({A}/PI())", section.hydraulic_diameter, "m", "four times the area over the perimeter")
+        ledger.live("D", "Hydraulic diameter", "2*SQRT({A}/PI())", section.hydraulic_diameter, "m",
+                    "four times the area over the perimeter")
     if run.setting.gas_kind != "flue-gas":
         formula = f"{gas.AIR_BETA!r}*{{Tm}}^1.5/({{Tm}}+{gas.AIR_SUTHERLAND!r})"
         ledger.live("mu", "Viscosity of air", formula, float(gas.air_viscosity(temperature)), "Pa s",
                     "Sutherland's law, US Standard Atmosphere 1976", fmt="0.000E+00")
     else:
-        wet = gas.wet_composition(*(run.input(name) for name in _SPECIES), run.matter["moisture"])
-        _viscosity(ledger, run, {name: float(fraction) for name, fraction in wet.items()})
+        _viscosity(ledger, run, {name: float(fraction) for name, fraction in run.composition().items()})
     ledger.live("Re", BY_NAME["reynolds_number"].label, "ABS({rhom}*{V})*{D}/{mu}", run.result.value("reynolds_number"), "1", fmt="#,##0")
 
 
@@ -139,6 +136,6 @@ def _viscosity(ledger: Ledger, run: RunView, wet: dict[str, float]) -> None:
         ledger.number(f"y.{name}", f"  mole fraction of {name} times the root of its molar mass", fraction * root, "1")
         top.append(f"{{y.{name}}}*{{mu.{name}}}")
         bottom.append(f"{{y.{name}}}")
-    wet_arrays = {name: np.float64(fraction) for name, fraction in wet.items()}
+    wet_arrays = {name: np.array(fraction) for name, fraction in wet.items()}
     ledger.live("mu", "Viscosity", f"({'+'.join(top)})/({'+'.join(bottom)})", float(gas.viscosity(wet_arrays, temperature)), "Pa s",
                 "Herning and Zipperer", fmt="0.000E+00")

@@ -32,8 +32,8 @@ def sheets(view: View) -> list[SheetSpec]:
         for i in range(view.layout.size):
             _point(sheet, row + 2 + i, index, i, view, names)
         row += view.layout.size + 4
-    for column in range(1, 20):
-        sheet.width(column, 16)
+    for place in range(1, 20):
+        sheet.width(place, 16)
     return [sheet]
 
 

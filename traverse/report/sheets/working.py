@@ -55,12 +55,12 @@ def _stated(ledger: Ledger, view: View, run: RunView) -> None:
         ledger.stated("water", gas.humidity.replace("_", " ").capitalize(), gas.water, unit)
     for component, stated in gas.composition.items():
         ledger.stated(component, f"{component.replace('_', ' ').capitalize()} (dry)", stated, "1")
-    for label, stated, unit in (
+    for label, given, unit in (
         ("density", gas.density, "kg/m3"), ("density_temperature", gas.density_temperature, "K"),
         ("density_pressure", gas.density_pressure, "Pa"), ("molar_mass_given", gas.molar_mass, "g/mol"),
     ):
-        if stated is not None:
-            ledger.stated(label, label.replace("_", " ").capitalize(), stated, unit)
+        if given is not None:
+            ledger.stated(label, label.replace("_", " ").capitalize(), given, unit)
     for dimension, stated in job.plane.section.dimensions.items():
         ledger.stated(dimension, dimension.replace("_", " ").capitalize(), stated, "m")
     reference = job.reference
