@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import sys
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from pathlib import Path
@@ -95,8 +96,7 @@ def _progress(paths: Sequence[Path], *, quiet: bool) -> Iterable[Path]:
     if quiet or len(paths) < 2:
         yield from paths
         return
-    progressbar: Any = click.progressbar
-    with progressbar(paths, label="reducing", file=click.get_text_stream("stderr")) as bar:
+    with click.progressbar(paths, label="reducing", file=sys.stderr) as bar:
         yield from bar
 
 
