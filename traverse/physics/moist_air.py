@@ -39,7 +39,8 @@ def mole_fraction(form: str, value: npt.ArrayLike, temperature: npt.ArrayLike, p
     -------
     array, shape (...)
         NaN for what cannot be: more water than saturation, a wet bulb or dew point above the dry bulb, a negative
-        humidity, a saturated gas at or above boiling.
+        humidity, a saturated gas at or above boiling; and for a relative humidity above 200 degC, where its saturation
+        pressure ends.
 
     Notes
     -----

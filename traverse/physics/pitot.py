@@ -24,7 +24,7 @@ def compressibility_factor(
     Returns
     -------
     array, shape (..., n)
-        1 at zero impact pressure; NaN where it is negative or the static pressure is not positive.
+        1 at zero impact pressure; NaN where it is negative, the static pressure is not positive, or the ratio not above 1.
 
     Notes
     -----
@@ -36,9 +36,9 @@ def compressibility_factor(
     with np.errstate(divide="ignore", invalid="ignore"):
         x = np.asarray(impact_pressure, dtype=np.float64) / static
         x = np.where((x >= 0.0) & (static > 0.0), x, np.nan)
-        a = (gamma - 1.0) / gamma
+        a = np.where(gamma > 1.0, (gamma - 1.0) / gamma, np.nan)
         square = np.expm1(a * np.log1p(x)) / (a * np.where(x == 0.0, 1.0, x))
-    return np.asarray(np.where(x == 0.0, 1.0, np.sqrt(square)))
+    return np.asarray(np.where((x == 0.0) & (a > 0.0), 1.0, np.sqrt(square)))
 
 
 def velocity(
@@ -66,8 +66,10 @@ def velocity(
     """
     pressure = np.asarray(differential_pressure, dtype=np.float64)
     factor = np.asarray(coefficient, dtype=np.float64)
-    with np.errstate(divide="ignore", invalid="ignore"):
-        speed = factor * np.sqrt(2.0 * pressure / np.asarray(density, dtype=np.float64))
+    heavy = np.asarray(density, dtype=np.float64)
+    with np.errstate(invalid="ignore"):
+        # Where both signs are wrong the quotient would look right.
+        speed = factor * np.sqrt(2.0 * pressure / np.where(heavy > 0.0, heavy, np.nan))
     if static_pressure is None:
         return np.asarray(speed)
     impact = np.square(factor) * pressure

@@ -14,18 +14,27 @@ Size = Mapping[str, npt.ArrayLike]
 def diameter(size: Size) -> Array:
     """Return the inside diameter of a round section. [m]
 
-    From ``diameter``, or from ``circumference``: inside, or outside when ``wall_thickness`` is given.
+    From ``diameter``, or from ``circumference``: inside, or outside when ``wall_thickness`` is given. NaN where it is not
+    positive: a wall thicker than the radius leaves no duct.
     """
     if "diameter" in size:
-        return np.asarray(size["diameter"], dtype=np.float64)
-    return np.asarray(np.asarray(size["circumference"], dtype=np.float64) / np.pi - 2.0 * np.asarray(size.get("wall_thickness", 0.0)))
+        return _positive(size["diameter"])
+    around = np.asarray(size["circumference"], dtype=np.float64)
+    return _positive(around / np.pi - 2.0 * np.asarray(size.get("wall_thickness", 0.0), dtype=np.float64))
+
+
+def _positive(length: npt.ArrayLike) -> Array:
+    # Two negative sides would multiply to an area that looks right.
+    value = np.asarray(length, dtype=np.float64)
+    return np.asarray(np.where(value > 0.0, value, np.nan))
 
 
 def extent(shape: str, size: Size) -> tuple[Array, Array]:
-    """Return the width and the height. [m]"""
+    """Return the width and the height. [m]  NaN where not positive."""
     if shape == "round":
-        return diameter(size), diameter(size)
-    return np.asarray(size["width"], dtype=np.float64), np.asarray(size["height"], dtype=np.float64)
+        across = diameter(size)
+        return across, across
+    return _positive(size["width"]), _positive(size["height"])
 
 
 def area(shape: str, size: Size) -> Array:
