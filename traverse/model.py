@@ -20,12 +20,10 @@ from traverse.units import Stated
 
 Array = npt.NDArray[np.float64]
 Status = Literal["read", "missing", "obstructed", "below range", "negative", "over range", "plugged", "excluded"]
-STATUSES: tuple[Status, ...] = (
-    "read", "missing", "obstructed", "below range", "negative", "over range", "plugged", "excluded",
-)
+STATUSES: tuple[Status, ...] = ("read", "missing", "obstructed", "below range", "negative", "over range", "plugged", "excluded")
 # Statuses of a point that gave no usable number: `[readings] missing` says what happens to them.
 UNREAD: frozenset[str] = frozenset({"missing", "obstructed", "plugged", "over range", "excluded"})
-# Statuses whose recorded pressure is not a measurement at all, so that it is null in the result.
+# Statuses whose recorded pressure is no measurement: null in the result.
 NULL: frozenset[str] = frozenset({"missing", "obstructed", "plugged", "excluded"})
 _EMPTY: Mapping[str, Stated] = MappingProxyType({})
 
@@ -162,9 +160,7 @@ class Pitot:
             )
 
 
-Humidity = Literal[
-    "relative_humidity", "wet_bulb", "dew_point", "humidity_ratio", "dry", "moisture", "saturated", "none"
-]
+Humidity = Literal["relative_humidity", "wet_bulb", "dew_point", "humidity_ratio", "dry", "moisture", "saturated", "none"]
 COMPONENTS = ("oxygen", "carbon_dioxide", "carbon_monoxide", "sulfur_dioxide")
 
 
@@ -188,8 +184,7 @@ class Gas:
 
     def fraction(self, name: str) -> float:
         """Return a component's dry mole fraction; 0 where none was stated."""
-        stated = self.composition.get(name)
-        return stated.value if stated else 0.0
+        return self.composition[name].value if name in self.composition else 0.0
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -258,7 +253,7 @@ class Readings:
 
     @property
     def text(self) -> tuple[str, ...]:
-        """The text the differential pressure (or velocity) was read from, per point."""
+        """The text each pressure (or velocity) was read from."""
         column = self.columns.get("differential_pressure") or self.columns.get("velocity")
         return column.text if column else ("",) * len(self.status)
 

@@ -153,10 +153,10 @@ def _finish(content: bytes, specs: Sequence[SheetSpec], stamp: dt.datetime) -> b
         for name in sorted(source.namelist()):
             part = source.read(name)
             if name in pages:
-                part = _with_values(part, pages[name])
+                part = _DECLARATION + _with_values(part, pages[name])
             if name == "docProps/core.xml":
                 part = re.sub(rb"(<dcterms:modified[^>]*>)[^<]*", rb"\g<1>" + stamp.strftime("%Y-%m-%dT%H:%M:%SZ").encode(), part)
-            if name.endswith((".xml", ".rels", ".vml")):
+            if name not in pages and name.endswith((".xml", ".rels", ".vml")):
                 part = _DECLARATION + ElementTree.canonicalize(part.decode("utf-8")).encode("utf-8")
             info = zipfile.ZipInfo(name, (1980, 1, 1, 0, 0, 0))
             info.compress_type = zipfile.ZIP_DEFLATED
@@ -184,6 +184,12 @@ def _with_values(part: bytes, spec: SheetSpec) -> bytes:
     assert found == sum(isinstance(content, Live) for content in contents.values()), f"{spec.title}: a formula is lost"
     for text in root.iter(_INLINE):
         text.set(_SPACE, "preserve")
+    # Written anew by one serialiser with sorted attributes: the same bytes whichever library wrote the page first.
+    for element in root.iter():
+        if len(element.attrib) > 1:
+            ordered = sorted(element.attrib.items())
+            element.attrib.clear()
+            element.attrib.update(ordered)
     return ElementTree.tostring(root)
 
 

@@ -1,4 +1,4 @@
-"""What every sheet sees, and the small helpers they share."""
+"""What every sheet sees, and the small functions they share."""
 
 from __future__ import annotations
 
