@@ -203,4 +203,5 @@ def refuse_impossible(quantities: dict[str, Array], run: Run) -> None:
             raise DomainError(
                 f"{name.replace('_', ' ')} cannot be computed", where=f"run {run.name}",
                 expected="pressures, temperatures and a composition that can exist together",
+                how="above 1600 K state [gas] ratio_of_specific_heats" if float(quantities["temperature"]) > 1600.0 else "",
             )

@@ -162,6 +162,12 @@ class _Point:
     def _velocity(self, row: int) -> None:
         """The isentropic factor, the velocity, and what it adds to the sums."""
         run, i = self.run, self.i
+        if not run.result.treated.counted[i]:
+            # Text, so that a chart of the column leaves the point out; it adds nothing to the sums.
+            self.sheet.put(row, 17, Text("not counted"), style="faint", key=f"{self.ledger.prefix}.v.{i}")
+            for column, name in ((18, "wv"), (19, "wvr"), (20, "wvs")):
+                self.number(row, column, name, 0.0, "0.00000")
+            return
         root, coefficient, pressure = float(run.root[i]), run.input("coefficient"), float(run.pressure[i])
         if run.setting.compressible:
             x = (coefficient * root) ** 2 / pressure

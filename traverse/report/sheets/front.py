@@ -169,7 +169,7 @@ def _statement(sheet: SheetSpec, view: View, row: int) -> int:
 
 
 def _checks(sheet: SheetSpec, view: View, row: int) -> int:
-    heads(sheet, row, ("Checks", "count", "which", *("",) * (_across(view) - 3)))
+    heads(sheet, row, ("Checks", "count", "which", *("",) * (_across(view) - 3)), right={"count"})
     for status in ("fail", "not evaluated", "pass", "not applicable"):
         row += 1
         found = [(run, check) for run, check in view.result.all_checks() if check.status == status]
