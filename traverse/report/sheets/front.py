@@ -20,7 +20,7 @@ DEFINED = {"actual_flow": "actual_flow", "dry_standard_flow": "dry_standard_flow
 def sheets(view: View) -> list[SheetSpec]:
     """Return the first page."""
     job = view.result.job
-    sheet = SheetSpec(TITLE, orientation="landscape" if len(view.runs) > 2 else "portrait")
+    sheet = SheetSpec(TITLE, orientation="landscape" if len(view.runs) > 4 else "portrait")
     sheet.put(1, 1, Text(job.title), style="title")
     sheet.put(2, 1, Text("Volumetric flow by pitot-tube traverse"), style="subtitle")
     row = _facts(sheet, view, 4)
