@@ -92,7 +92,7 @@ def main() -> int:
     parser.add_argument("--workers", type=int, default=os.cpu_count() or 1, help="mutants judged at a time")
     parser.add_argument("--seconds", type=float, default=240.0, help="stop judging after so long")
     parser.add_argument("--every", type=int, default=8, help="judge about one mutant in so many; 1 judges all")
-    parser.add_argument("--share", type=float, default=0.80, help="the least share that must be noticed")
+    parser.add_argument("--share", type=float, default=0.85, help="the least share that must be noticed")
     parser.add_argument("--list", action="store_true", help="show the change of every survivor")
     options = parser.parse_args()
     with tempfile.TemporaryDirectory() as name:
