@@ -1,4 +1,4 @@
-"""The layout rules: conformance over all found by scan, printed tables, exact mathematics."""
+"""The layout rules: printed tables, exact mathematics, placement."""
 
 import math
 
@@ -10,51 +10,6 @@ from hypothesis import strategies as st
 from traverse import layouts, tables
 from traverse.errors import LayoutError
 from traverse.layouts.log_tchebycheff import nodes
-
-SHAPES = ("round", "rectangle")
-
-
-def counts(rule, shape):
-    """Every number of points on a line up to 24 for which the rule exists."""
-    found = []
-    for points in range(1, 25):
-        try:
-            rule.fractions(shape, points)
-        except LayoutError:
-            continue
-        found.append(points)
-    return found
-
-
-CASES = [(name, shape, points) for name, rule in layouts.rules().items() for shape in SHAPES for points in counts(rule, shape)]
-
-
-def test_there_are_rules():
-    assert {"equal-area", "log-linear", "log-tchebycheff"} <= set(layouts.rules())
-    assert len(CASES) > 50
-
-
-@pytest.mark.parametrize(("name", "shape", "points"), CASES)
-def test_conformance(name, shape, points):
-    """Weights sum to 1, points inside and increasing, symmetric about the middle, a source for every rule."""
-    rule = layouts.rules()[name]
-    fraction, weight = rule.fractions(shape, points)
-    assert len(fraction) == len(weight) == points
-    assert weight.sum() == pytest.approx(1.0, abs=1e-14)
-    assert np.all(np.diff(fraction) > 0) and fraction[0] > 0 and fraction[-1] < 1
-    np.testing.assert_allclose(fraction + fraction[::-1], 1.0, atol=1e-13)
-    assert rule.source and rule.title and rule.exact_for
-    placed = layouts.place(name, shape=shape, width=1.3, height=1.3 if shape == "round" else 0.7, lines=points if shape == "rectangle" else 3,
-                           points=points)
-    assert placed.weight.sum() == pytest.approx(1.0, abs=1e-13)
-    assert len(set(zip(placed.line, placed.point, strict=True))) == len(placed.x)
-
-
-@pytest.mark.parametrize(("name", "shape", "points"), CASES)
-def test_uniform_flow_is_exact(name, shape, points):
-    fraction, weight = layouts.rules()[name].fractions(shape, points)
-    assert float(np.sum(weight * np.ones_like(fraction))) == pytest.approx(1.0, abs=1e-14)
-
 
 # --- printed tables -------------------------------------------------------------------------------------------------
 
@@ -186,37 +141,6 @@ def test_odd_log_linear_is_exact_for_the_logarithm(k):
         assert float(np.sum(weight * (1 + k * np.log(y)))) == pytest.approx(1 - 1.5 * k, abs=1e-12)
 
 
-# Errors in percent on axisymmetric profiles, computed for printed positions (three-digit y/D or four-digit r/R).
-# columns: points per radius; exact positions used here move an entry by up to 0.03.
-POWER = {5: 0.757576, 7: 0.816667, 10: 0.865801}
-EQUAL_AREA = {(5, 2): 1.61, (5, 3): 1.04, (5, 5): 0.60, (7, 2): 1.39, (7, 3): 0.92, (7, 4): 0.68, (7, 5): 0.54, (7, 8): 0.32, (7, 10): 0.25,
-              (10, 2): 1.12, (10, 5): 0.44}
-
-
-@pytest.mark.parametrize(("n", "per_radius"), list(EQUAL_AREA))
-def test_equal_area_error_on_the_power_law(n, per_radius):
-    """(1 - r)^(1/n): exact mean 2 n^2/((n + 1)(2n + 1)); the rule's error to the printed 0.01 %."""
-    fraction, weight = layouts.rules()["equal-area"].fractions("round", 2 * per_radius)
-    mean = float(np.sum(weight * (2 * np.minimum(fraction, 1 - fraction)) ** (1 / n)))
-    assert POWER[n] == pytest.approx(2 * n * n / ((n + 1) * (2 * n + 1)), abs=5e-7)
-    assert 100 * (mean * (n + 1) * (2 * n + 1) / (2 * n * n) - 1) == pytest.approx(EQUAL_AREA[n, per_radius], abs=0.0051)
-
-
-@pytest.mark.parametrize(("n", "side", "error"), [(5, 5, -0.60), (5, 6, -0.74), (5, 7, -0.34), (7, 5, -0.26), (7, 6, -0.39), (7, 7, -0.14), (10, 5, -0.07)])
-def test_rectangular_log_tchebycheff_error_on_the_product_power_law(n, side, error):
-    """Product power law, exact mean (n/(n + 1))^2, exact positions: errors to 0.01 %."""
-    fraction, weight = layouts.rules()["log-tchebycheff"].fractions("rectangle", side)
-    line = float(np.sum(weight * (2 * np.minimum(fraction, 1 - fraction)) ** (1 / n)))
-    assert 100 * ((line * (n + 1) / n) ** 2 - 1) == pytest.approx(error, abs=0.0051)
-
-
-@pytest.mark.parametrize(("n", "side", "error"), [(5, 4, 4.28), (7, 4, 3.47), (7, 5, 3.39), (7, 8, 1.63), (10, 10, 1.01)])
-def test_rectangular_equal_area_error_on_the_product_power_law(n, side, error):
-    fraction, weight = layouts.rules()["equal-area"].fractions("rectangle", side)
-    line = float(np.sum(weight * (2 * np.minimum(fraction, 1 - fraction)) ** (1 / n)))
-    assert 100 * ((line * (n + 1) / n) ** 2 - 1) == pytest.approx(error, abs=0.0051)
-
-
 # --- placement ------------------------------------------------------------------------------------------------------
 
 
@@ -291,3 +215,94 @@ def test_impossible_layouts(arguments, message):
 def test_rectangular_log_tchebycheff_that_does_not_exist(points):
     with pytest.raises(LayoutError, match="3 to 9"):
         layouts.place("log-tchebycheff", shape="rectangle", width=1.0, height=1.0, lines=5, points=points)
+
+
+@pytest.mark.parametrize(("change", "message"), [
+    ({"digits": "printd"}, "exact, printed"), ({"shape": "oval"}, "round, rectangle"), ({"along": "heigth"}, "height, width"),
+    ({"lines": 0}, "at least 1"), ({"width": 0.0}, "diameter"), ({"width": math.nan}, "diameter"), ({"width": math.inf}, "diameter"),
+    ({"shape": "rectangle", "height": -1.0}, "a height of"), ({"wall_distance": math.nan}, "wide enough"), ({"wall_distance": -0.01}, "wide enough"),
+    ({"wall_distance": 0.5}, "wide enough"), ({"angles": [0.0, 3.1415926]}, "same angle"), ({"angles": [0.0, math.nan]}, "no number"),
+    ({"angles": [0.0]}, "2 angles"),
+])
+def test_words_and_sizes_that_would_give_wrong_places(change, message):
+    full = {"shape": "round", "width": 1.0, "height": 1.0, "lines": 2, "points": 6} | change
+    with pytest.raises(LayoutError, match=message):
+        layouts.place("equal-area", **full)
+
+
+def test_names_go_on_after_z():
+    placed = layouts.place("equal-area", shape="rectangle", width=1.0, height=1.0, lines=703, points=1)
+    assert [placed.line[i] for i in (0, 25, 26, 27, 51, 52, 701, 702)] == ["A", "Z", "AA", "AB", "AZ", "BA", "ZZ", "AAA"]
+
+
+def test_default_angles_and_given_ones():
+    """Three diameters: 0, 60 and 120 degrees; a port on the far side turns its line round."""
+    placed = layouts.place("equal-area", shape="round", width=2.0, height=2.0, lines=3, points=2)
+    np.testing.assert_allclose(np.degrees(np.arctan2(placed.y, placed.x)[::2]), [0, 60, 120], atol=1e-12)
+    far = layouts.place("equal-area", shape="round", width=2.0, height=2.0, lines=2, points=2, angles=[math.pi, math.pi / 2])
+    np.testing.assert_allclose(far.x[:2], [-math.sqrt(0.5), math.sqrt(0.5)], atol=1e-14)
+
+
+def test_moved_points_are_told():
+    placed = layouts.place("equal-area", shape="round", width=26.0, height=26.0, lines=2, points=24, wall_distance=1.0)
+    assert placed.notes == ("4 points on each line moved out to 1000.0 mm from the wall; where two fall together both are read and both count",)
+    assert placed.weight.sum() == pytest.approx(1.0) and len(set(placed.weight.tolist())) == 1
+    assert placed.depth[22] == placed.depth[23] == 25.0
+    assert placed.moved == ((True, True) + (False,) * 20 + (True, True)) * 2
+    still = layouts.place("equal-area", shape="round", width=11.0, height=11.0, lines=2, points=4, wall_distance=0.5)
+    assert not any(still.moved) and not still.notes
+
+
+def test_a_rectangle_is_left_alone_by_the_wall_distance():
+    placed = layouts.place("equal-area", shape="rectangle", width=1.0, height=1.0, lines=2, points=10, wall_distance=0.2)
+    assert placed.depth[0] == pytest.approx(0.05) and not any(placed.moved)
+
+
+def test_custom_lines_of_a_rectangle():
+    """Centres of equal parts, or stated positions from the left or from the top, in the order of the names."""
+    points = {"shape": "rectangle", "width": 0.9, "height": 0.6, "line": ["B", "A"], "point": [1, 1], "depth": [0.1, 0.2], "weight": [0.5, 0.5]}
+    placed = layouts.place_custom(**points)
+    np.testing.assert_allclose(placed.x, [-0.225, 0.225], atol=1e-15)
+    np.testing.assert_allclose(placed.y, [0.2, 0.1], atol=1e-15)
+    stated = layouts.place_custom(**points, positions=[0.1, 0.7], names=["A", "B"])
+    np.testing.assert_allclose(stated.x, [0.25, -0.35], atol=1e-15)
+    across = layouts.place_custom(**points, positions=[0.1, 0.5], along="width")
+    np.testing.assert_allclose(across.x, [-0.35, -0.25], atol=1e-15)
+    np.testing.assert_allclose(across.y, [0.2, -0.2], atol=1e-15)
+    place = layouts.place_custom(**(points | {"depth": None}), x=across.x, y=across.y, along="width")
+    np.testing.assert_allclose(place.depth, [0.1, 0.2], atol=1e-15)
+
+
+def test_custom_angles_belong_to_the_named_lines():
+    points = {"shape": "round", "width": 2.0, "height": 2.0, "line": ["B", "A"], "point": [1, 1], "depth": [0.5, 0.5], "weight": [0.5, 0.5]}
+    first = layouts.place_custom(**points)
+    np.testing.assert_allclose([*first.x, *first.y], [0.5, 0.0, 0.0, 0.5], atol=1e-15)
+    named = layouts.place_custom(**points, angles=[0.0, math.pi / 2], names=["A", "B"])
+    np.testing.assert_allclose([*named.x, *named.y], [0.0, 0.5, 0.5, 0.0], atol=1e-15)
+    with pytest.raises(LayoutError, match="each line of the points once"):
+        layouts.place_custom(**points, names=["A", "C"])
+
+
+def test_custom_points_beside_their_diameter_have_no_mark():
+    """A depth that no probe can be marked with must not stand there without a word."""
+    points = {"shape": "round", "width": 2.0, "height": 2.0, "line": ["A", "A"], "point": [1, 2], "weight": [0.5, 0.5]}
+    placed = layouts.place_custom(**points, x=[0.5, 0.2], y=[0.0, 0.3])
+    assert placed.depth[0] == pytest.approx(0.5)
+    assert len(placed.notes) == 1 and placed.notes[0].startswith("A2 not on the diameter") and "no mark" in placed.notes[0]
+    turned = layouts.place_custom(**points, x=[0.5, 0.2], y=[0.5, 0.2], angles=[math.pi / 4])
+    assert not turned.notes
+    np.testing.assert_allclose(turned.depth, [1 - math.sqrt(0.5), 1 - math.sqrt(0.08)], atol=1e-14)
+
+
+@pytest.mark.parametrize(("change", "message"), [
+    ({"line": [], "point": [], "depth": [], "weight": []}, "no points"), ({"depth": [0.1, 0.2, 0.3]}, "3 of depth for 2 points"),
+    ({"weight": [1]}, "1 of weight"), ({"point": [1]}, "1 of point"), ({"x": [0.0, 0.1], "y": [0.0, 0.1]}, "both a depth"),
+    ({"positions": [0.5]}, "positions in a round section"), ({"shape": "rectangle", "angles": [0.0]}, "angles for a rectangle"),
+    ({"shape": "rectangle", "positions": [0.2, 0.4]}, "2 positions"), ({"depth": [0.1, math.nan]}, "outside"), ({"along": "depth"}, "height, width"),
+    ({"width": -1.0}, "diameter"), ({"depth": None, "x": [0.0, 0.1]}, "no places"),
+    ({"depth": None, "x": [0.0, 0.1], "y": [0.0]}, "1 of y"),
+])
+def test_custom_points_that_do_not_fit_together(change, message):
+    given_points = {"shape": "round", "width": 1.0, "height": 1.0, "line": ["A", "A"], "point": [1, 2], "depth": [0.1, 0.5], "weight": [1, 1]}
+    with pytest.raises(LayoutError, match=message):
+        layouts.place_custom(**(given_points | change))

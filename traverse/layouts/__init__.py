@@ -10,10 +10,21 @@ from importlib import import_module
 import numpy as np
 
 from traverse.errors import LayoutError, nearest
-from traverse.layouts._base import Array, Placement, Rule, checked_angles, checked_names, diameters, move_off_wall
+from traverse.layouts._base import (
+    Array,
+    Placement,
+    Rule,
+    Term,
+    checked_angles,
+    checked_names,
+    checked_size,
+    diameters,
+    move_off_wall,
+    one_of,
+)
 from traverse.layouts._custom import place_custom
 
-__all__ = ["Placement", "Rule", "place", "place_custom", "rules"]
+__all__ = ["Placement", "Rule", "Term", "fractions", "place", "place_custom", "rules"]
 
 
 @lru_cache(maxsize=1)
@@ -42,6 +53,17 @@ def rule(name: str) -> Rule:
     return rules()[name]
 
 
+def fractions(name: str, shape: str, points: int, digits: str = "exact") -> tuple[Array, Array]:
+    """Return a rule's points on one line: fractions of its length from the wall at the port, and weights that sum to 1.
+
+    Raises
+    ------
+    LayoutError
+        If the rule does not exist for what is asked.
+    """
+    return rule(name).fractions(shape, points, digits)
+
+
 def place(
     name: str, *, shape: str, width: float, height: float, lines: int, points: int, angles: Sequence[float] | None = None,
     along: str = "height", names: Sequence[str] | None = None, digits: str = "exact", wall_distance: float = 0.0,
@@ -66,7 +88,8 @@ def place(
     digits : {'exact', 'printed'}
         Positions from the rule's mathematics, or the digits a standard prints.
     wall_distance : float
-        Round sections: no point nearer to the wall; it is moved out, and points that then coincide count twice. [m]
+        Round sections only: no point nearer to the wall; it is moved out, and points that then coincide count twice.
+        Points of a rectangle stay where they are. [m]
 
     Raises
     ------
@@ -74,6 +97,8 @@ def place(
         If the rule does not exist for what is asked.
     """
     chosen = rule(name)
+    checked_size(shape, width, height)
+    one_of("along", along, ("height", "width"), "[layout] along")
     if lines < 1:
         raise LayoutError(f"{lines} lines", where="[layout] lines", expected="at least 1")
     labels = checked_names(names, lines)
@@ -96,7 +121,7 @@ def _round(
     if moved.any():
         notes = (f"{int(moved.sum())} points on each line moved out to {least * 1000:.1f} mm from the wall; "
                  "where two fall together both are read and both count",)
-    return _placement(chosen, x, y, depths, shares, labels, points, tuple(np.tile(moved, lines).tolist()), notes)
+    return _placement(chosen, x, y, depths, shares, labels, points, tuple(np.tile(moved, lines).tolist()), notes, digits)
 
 
 def _rectangle(
@@ -104,7 +129,12 @@ def _rectangle(
 ) -> Placement:
     lines = len(labels)
     along_fraction, along_share = chosen.fractions("rectangle", points, digits)
-    across_fraction, across_share = chosen.fractions("rectangle", lines, digits)
+    try:
+        across_fraction, across_share = chosen.fractions("rectangle", lines, digits)
+    except LayoutError as problem:
+        raise LayoutError(
+            f"{lines} lines: {problem.found}", where="[layout] lines", expected=problem.expected, how=problem.how
+        ) from problem
     travel, across = (height, width) if along == "height" else (width, height)
     depth = np.tile(along_fraction * travel, lines)
     position = np.repeat(across_fraction * across, points)
@@ -113,15 +143,16 @@ def _rectangle(
         x, y = position - width / 2.0, height / 2.0 - depth
     else:
         x, y = depth - width / 2.0, height / 2.0 - position
-    return _placement(chosen, x, y, depth, shares, labels, points, (False,) * len(depth), ())
+    return _placement(chosen, x, y, depth, shares, labels, points, (False,) * len(depth), (), digits)
 
 
 def _placement(
     chosen: Rule, x: Array, y: Array, depth: Array, weight: Array, labels: tuple[str, ...], points: int,
-    moved: tuple[bool, ...], notes: tuple[str, ...],
+    moved: tuple[bool, ...], notes: tuple[str, ...], digits: str,
 ) -> Placement:
+    source = chosen.printed_source if digits == "printed" else chosen.source
     return Placement(
-        title=chosen.title, source=chosen.source, x=x, y=y, depth=depth, weight=weight / weight.sum(),
+        title=chosen.title, source=source, x=x, y=y, depth=depth, weight=weight / weight.sum(),
         line=tuple(label for label in labels for _ in range(points)),
         point=tuple(range(1, points + 1)) * len(labels), moved=moved, notes=notes,
     )

@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+import sys
+
 import numpy as np
 
 from traverse import tables
 from traverse.errors import LayoutError
-from traverse.layouts._base import Array, Rule
+from traverse.layouts._base import EVEN, Array, Rule, Term
 
 
 def on_diameter(points: int) -> tuple[Array, Array]:
@@ -16,7 +18,7 @@ def on_diameter(points: int) -> tuple[Array, Array]:
     """
     if points < 2 or points % 2:
         raise LayoutError(
-            f"{points} points on a diameter", where="[layout] points", expected="an even number, the same on either side of the centre"
+            f"{points} points on a diameter", where="[layout] points", expected=EVEN
         )
     k = np.arange(1, points // 2 + 1)
     half = 0.5 * (1.0 - np.sqrt(1.0 - (2 * k - 1) / points))
@@ -29,6 +31,15 @@ def on_side(points: int) -> tuple[Array, Array]:
         raise LayoutError(f"{points} points on a side", where="[layout] points", expected="at least 1")
     k = np.arange(1, points + 1)
     return (2 * k - 1) / (2.0 * points), np.full(points, 1.0 / points)
+
+
+def exact(shape: str, _points: int) -> tuple[Term, ...]:
+    """Return 1 and the square of the radius on a circle, 1 and the place on a side."""
+    power = 2 if shape == "round" else 1
+    return (
+        Term(words="1", zone=(0.0, 1.0), value=np.ones_like),
+        Term(words="(r/R)^2" if shape == "round" else "x/L", zone=(0.0, 1.0), value=lambda u: u**power),
+    )
 
 
 def _printed() -> dict[tuple[str, int], tuple[str, ...]]:
@@ -47,4 +58,7 @@ RULE = Rule(
     printed=_printed(),
     printed_source=tables.load("layout_equal_area")["source"],
     exact_for="round: velocity linear in the square of the radius; rectangle: velocity linear in each direction",
+    exact=exact,
+    round_points=range(2, sys.maxsize, 2),
+    side_points=range(1, sys.maxsize),
 )

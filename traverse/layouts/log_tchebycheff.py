@@ -9,7 +9,7 @@ import numpy as np
 
 from traverse import tables
 from traverse.errors import LayoutError
-from traverse.layouts._base import Array, Rule
+from traverse.layouts._base import EVEN, Array, Rule, Term
 from traverse.layouts._wall import log_mean_distance
 
 
@@ -56,7 +56,7 @@ def on_diameter(points: int) -> tuple[Array, Array]:
     """
     if points % 2 or not 6 <= points <= 16:
         raise LayoutError(
-            f"{points} log-Tchebycheff points on a diameter", where="[layout] points", expected="an even number from 6 to 16"
+            f"{points} log-Tchebycheff points on a diameter", where="[layout] points", expected=f"from 6 to 16, {EVEN}"
         )
     n = points // 2
     squared = (n - 1) / (2.0 * n) * (1.0 + np.array(nodes(n - 1)))
@@ -80,6 +80,28 @@ def on_side(points: int) -> tuple[Array, Array]:
     return np.concatenate([[wall], inner, [1.0 - wall]]), np.full(points, 1.0 / points)
 
 
+def exact(shape: str, points: int) -> tuple[Term, ...]:
+    """Return 1 and the logarithm of the wall distance outside, the powers up to the number of nodes inside."""
+    if shape == "round":
+        n = points // 2
+        inside, outside = (0.0, (n - 1) / n), ((n - 1) / n, 1.0)
+        near = [Term(words="ln y", zone=outside, value=lambda r: np.log(1.0 - r))]
+        ends, count, power = [outside], n - 1, 2
+    else:
+        ends = [(0.0, 1.0 / points), (1.0 - 1.0 / points, 1.0)]
+        inside, count, power = (1.0 / points, 1.0 - 1.0 / points), points - 2, 1
+        near = [
+            Term(words="ln of the wall distance", zone=ends[0], value=np.log),
+            Term(words="ln of the wall distance", zone=ends[1], value=lambda x: np.log(1.0 - x)),
+        ]
+    flat = [Term(words="1", zone=zone, value=np.ones_like) for zone in ends]
+    return (*flat, *near, *(_power(inside, power * k) for k in range(count + 1)))
+
+
+def _power(zone: tuple[float, float], power: int) -> Term:
+    return Term(words=f"power {power}", zone=zone, value=lambda u: u**power)
+
+
 _TABLE = tables.load("layout_log_tchebycheff")
 RULE = Rule(
     name="log-tchebycheff",
@@ -94,4 +116,7 @@ RULE = Rule(
     },
     printed_source=_TABLE["source"],
     exact_for="logarithmic in the outermost part, polynomial (round: in the squared radius) of the order of the nodes inside",
+    exact=exact,
+    round_points=range(6, 17, 2),
+    side_points=range(3, 10),
 )
