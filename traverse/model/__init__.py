@@ -1,0 +1,62 @@
+"""The records of a job: frozen, keyword-only, SI inside, with what was written beside each value.
+
+Records validate what they hold and derive what follows from it; nothing else. Arrays are float64 and read-only.
+"""
+
+from traverse.model._base import Array, Finding, frozen
+from traverse.model._job import (
+    COMPONENTS,
+    NULL,
+    STATUSES,
+    UNREAD,
+    Column,
+    Component,
+    Conditions,
+    Corrections,
+    Design,
+    Distribution,
+    Gas,
+    Humidity,
+    Job,
+    Pitot,
+    Policies,
+    Readings,
+    Reference,
+    Run,
+    Setup,
+    Source,
+    Status,
+    Uncertainties,
+)
+from traverse.model._place import Layout, Plane, Section
+
+__all__ = [
+    "COMPONENTS",
+    "NULL",
+    "STATUSES",
+    "UNREAD",
+    "Array",
+    "Column",
+    "Component",
+    "Conditions",
+    "Corrections",
+    "Design",
+    "Distribution",
+    "Finding",
+    "Gas",
+    "Humidity",
+    "Job",
+    "Layout",
+    "Pitot",
+    "Plane",
+    "Policies",
+    "Readings",
+    "Reference",
+    "Run",
+    "Section",
+    "Setup",
+    "Source",
+    "Status",
+    "Uncertainties",
+    "frozen",
+]
