@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import replace
 
 import numpy as np
@@ -11,11 +11,12 @@ import numpy as np
 from traverse import checks, methods
 from traverse._version import __version__
 from traverse.chain import Flow, evaluate
+from traverse.errors import LayoutError, ReadingError
 from traverse.methods import Method
-from traverse.model import Array, Finding, Job, Reference, Run
+from traverse.model import UNREAD, Array, Finding, Job, Reference, Run
 from traverse.quantities import BY_NAME, NAMES
 from traverse.result import DesignComparison, Measured, Reduction, RunResult, Spread
-from traverse.treatment import Treated, inputs, refuse_impossible, setting, treat
+from traverse.treatment import MISSING_RULES, Treated, inputs, refuse_impossible, setting, treat
 from traverse.uncertainty import directions, propagation
 from traverse.uncertainty.runs import of_mean
 from traverse.units import parse
@@ -81,7 +82,7 @@ def with_reference(job: Job, method: Method) -> tuple[Job, tuple[Finding, ...]]:
 
 
 def _run(job: Job, run: Run, method: Method) -> RunResult:
-    treated = treat(run.readings, job.layout, job.policies)
+    treated = treat(run.readings, job.layout, job.plane.section, job.policies)
     signed = job.policies.negative == "signed"
     arrays, equations = inputs(job, run, method, treated), setting(job, run, method, signed=signed)
     flow = evaluate(arrays, equations)
@@ -89,12 +90,14 @@ def _run(job: Job, run: Run, method: Method) -> RunResult:
     rows = directions.rows(job, run, arrays, treated.counted)
     moved = propagation.deviations(rows, arrays, equations)
     quantities, notes = _quantities(job, method, flow, moved, rows)
-    treatments, treatment_findings = _treatments(job, run, method)
+    treatments, findings = _negative(job, run, method)
+    missing, missing_findings = _missing(job, run, method)
+    findings += missing_findings + _integration(run, treated)
     result = RunResult(
         run=run, quantities=quantities, notes=notes, treated=treated, velocity=_point(flow.points["velocity"], job),
         density=_point(flow.points["density"], job),
         budget={name: propagation.budget(rows, moved, name) for name in flow.quantities} if rows else {},
-        checks=(), treatments=treatments, exact=_exact(job, run, method, treated, signed), findings=treatment_findings,
+        checks=(), treatments=treatments, missing=missing, exact=_exact(job, run, method, treated, signed), findings=findings,
     )
     return replace(result, checks=checks.over_run(job, method, result))
 
@@ -149,30 +152,68 @@ def _reason(name: str, value: float, job: Job, method: Method) -> str:
     return "the inputs do not determine it"
 
 
-def _treatments(
-    job: Job, run: Run, method: Method
-) -> tuple[dict[str, dict[str, float]], tuple[Finding, ...]]:
+def _flows(job: Job, run: Run, method: Method, *, negative: str | None = None, missing: str | None = None) -> dict[str, float]:
+    """Return the flows that another rule for the readings would give."""
+    treated = treat(run.readings, job.layout, job.plane.section, job.policies, negative=negative, missing=missing)
+    signed = (negative or job.policies.negative) == "signed"
+    flow = evaluate(inputs(job, run, method, treated), setting(job, run, method, signed=signed))
+    return {name: float(flow.quantities[name]) for name in BESIDE if _finite(flow, name)}
+
+
+def _negative(job: Job, run: Run, method: Method) -> tuple[dict[str, dict[str, float]], tuple[Finding, ...]]:
     """Return the flows under each rule for negative readings, and the finding; empty where there are none."""
     negative = np.flatnonzero(run.readings.differential_pressure < 0)
     if not negative.size:
         return {}, ()
-    found: dict[str, dict[str, float]] = {}
-    for rule in ("zero", "signed", "omit"):
-        treated = treat(run.readings, job.layout, job.policies, negative=rule)
-        flow = evaluate(inputs(job, run, method, treated), setting(job, run, method, signed=rule == "signed"))
-        found[rule] = {name: float(flow.quantities[name]) for name in BESIDE if _finite(flow, name)}
+    found = {rule: _flows(job, run, method, negative=rule) for rule in ("zero", "signed", "omit")}
     used = "zero" if job.policies.negative == "method" else job.policies.negative
-    names = ", ".join(f"{run.readings.line[i]}{run.readings.point[i]}" for i in negative)
+    what = f"negative reading at {_labels(run, negative)}, treated by the rule '{used}'"
+    message = what + (" (velocity 0, still counted)" if used == "zero" else "") + _others(found, used)
+    return found, (Finding(
+        level="attention", topic="negative readings", message=f"run {run.name}: {message}", setting="[readings] negative",
+    ),)
+
+
+def _missing(job: Job, run: Run, method: Method) -> tuple[dict[str, dict[str, float]], tuple[Finding, ...]]:
+    """Return the flows under each rule for points that were not read, and the finding; empty where all were read."""
+    unread = np.flatnonzero([status in UNREAD for status in run.readings.status])
+    if not unread.size:
+        return {}, ()
+    found: dict[str, dict[str, float]] = {}
+    reasons = []
+    for rule in MISSING_RULES:
+        try:
+            found[rule] = _flows(job, run, method, missing=rule)
+        except (ReadingError, LayoutError) as problem:
+            reasons.append(f"'{rule}' cannot be followed ({problem.found})")
+    used = job.policies.missing
+    message = "; ".join((f"no reading at {_labels(run, unread)}, treated by the rule '{used}'{_others(found, used)}", *reasons))
+    return found, (Finding(
+        level="attention", topic="missing readings", message=f"run {run.name}: {message}", setting="[readings] missing",
+    ),)
+
+
+def _labels(run: Run, index: Iterable[int]) -> str:
+    return ", ".join(f"{run.readings.line[i]}{run.readings.point[i]}" for i in index)
+
+
+def _others(found: Mapping[str, Mapping[str, float]], used: str) -> str:
+    """Say how far the flows under the other rules lie from the one under the rule that was used."""
     base = found[used]["actual_flow"]
-    others = "; ".join(
-        f"'{rule}' would give {100 * (values['actual_flow'] / base - 1):+.2f} %"
-        for rule, values in found.items() if rule != used and base
-    )
-    message = (
-        f"run {run.name}: negative reading at {names}, treated by the rule '{used}'"
-        f"{' (velocity 0, still counted)' if used == 'zero' else ''}; {others} in flow."
-    )
-    return found, (Finding(level="attention", topic="negative readings", message=message, setting="[readings] negative"),)
+    others = [f"'{rule}' would give {100 * (values['actual_flow'] / base - 1):+.2f} %"
+              for rule, values in found.items() if rule != used and base]
+    return f"; {'; '.join(others)} in flow." if others else "."
+
+
+def _integration(run: Run, treated: Treated) -> tuple[Finding, ...]:
+    """Say which exponent the wall law took, where the velocities were integrated."""
+    if treated.wall_exponent is None:
+        return ()
+    return (Finding(
+        level="note", topic="integration", setting="[layout] wall_exponent",
+        message=f"run {run.name}: power law to the wall with exponent {treated.wall_exponent:.2f}; the integration carries "
+        f"{100 * treated.profile_factor:.2f} % of a uniform velocity.",
+    ),)
 
 
 def _finite(flow: Flow, name: str) -> bool:

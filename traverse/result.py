@@ -106,6 +106,7 @@ class RunResult:
     budget: Mapping[str, tuple[BudgetRow, ...]]
     checks: tuple[CheckOutcome, ...]
     treatments: Mapping[str, Mapping[str, float]]
+    missing: Mapping[str, Mapping[str, float]]
     exact: Mapping[str, float]
     findings: tuple[Finding, ...] = ()
 
@@ -201,6 +202,7 @@ class Reduction:
             "points": _points(self.job, result),
             "checks": [check.to_dict() for check in result.checks],
             "negative_treatments": {rule: dict(values) for rule, values in result.treatments.items()},
+            "missing_treatments": {rule: dict(values) for rule, values in result.missing.items()},
             "exact_physics": dict(result.exact),
             "findings": [{"level": f.level, "topic": f.topic, "message": f.message} for f in result.findings],
         }

@@ -25,7 +25,7 @@ HEAVY = ("numpy", "pandas", "scipy", "openpyxl", "matplotlib")
 HOMES = {
     "click": ("traverse.cli",),
     "pandas": ("traverse.importers", "traverse.report.frames"),
-    "matplotlib": ("traverse.report.figures",),
+    "matplotlib": ("traverse.report.figures", "traverse.report.plan_figure", "traverse.report.study_figure"),
     "openpyxl": ("traverse.importers", "traverse.report.workbook", "traverse.report._charts", "traverse.report._theme"),
 }
 # The workbook's two private parts; nobody but it may use them.

@@ -102,16 +102,11 @@ def test_a_bare_number_for_a_percentage_is_told_how_to_write_it(write, bare, tol
         ("readings", 'file = "r.csv"\nform = "log"'),
         ("readings", 'file = "r.csv"\nsheet = "x"'),
         ("readings", 'file = "r.csv"\nmatrix = "points down"'),
-        ("readings", 'file = "r.csv"\nmissing = "field"'),
         ("corrections", "displacement = true"),
         ("corrections", "layout = true"),
         ("pitot", 'type = "two-dimensional"'),
         ("pitot", 'type = "three-dimensional"'),
         ("pitot", 'calibration = "p.csv"'),
-        ("plane", 'shape = "flat-oval"\nwidth = "1 m"\nheight = "1 m"'),
-        ("plane", 'shape = "annulus"\ndiameter = "1 m"'),
-        ("plane", 'shape = "polygon"'),
-        ("plane", 'shape = "round"\ncore = "1 m"'),
     ],
 )
 def test_a_later_capability_is_refused_by_name(write, table, body):
@@ -171,13 +166,28 @@ def test_the_method_defaults_to_exact_with_a_finding(write):
 @pytest.mark.parametrize(
     ("body", "words"),
     [
-        ('shape = "round"', ("neither",)),
+        ('shape = "round"', ("no diameter", "circumference")),
+        ('shape = "annulus"\ndiameter = "1 m"', ("no core",)),
+        ('shape = "annulus"\ndiameter = "1 m"\ncore = "1 m"', ("nothing is left open",)),
+        ('shape = "annulus"\ngap = "0.1 m"\ncore = "1 m"\nlining = "1 cm"', ("open gap",)),
+        ('shape = "ellipse"\nwidth = "1 m"', ("no height",)),
+        ('shape = "flat-oval"\nwidth = "1 m"\nheight = "1 m"\ndiameter = "1 m"', ("no diameter",)),
+        ('shape = "rectangle"\nwidth = "1 m"\nheight = "0.2 m"\nlining = "0.1 m"', ("nothing is left open",)),
+        ('shape = "round"\ndiameter = ["1 m", "-1 m"]', ("greater than zero",)),
+        ('shape = "round"\ncore = "1 m"', ("no core",)),
+        ('shape = "polygon"', ("no vertices", "corners in order")),
+        ('shape = "polygon"\nvertices = [["0 m", "0 m"], ["1 m", "0 m"]]', ("at least three",)),
+        ('shape = "polygon"\nvertices = [["0 m", "0 m"], ["1 m", "0 m"], ["1 m"]]', ("vertices[3]", "x and y")),
+        ('shape = "polygon"\nvertices = [["0 m", "0 m"], ["1 m", "1 m"], ["1 m", "0 m"], ["0 m", "1 m"]]', ("sides 1 and 3", "meet")),
+        ('shape = "polygon"\nvertices = [["0 m", "0 m"], ["1 m", "0 m"], ["1 m", "0 m"], ["0 m", "1 m"]]', ("2 and 3 are one place",)),
+        ('shape = "polygon"\nwidth = "1 m"\nvertices = [["0 m", "0 m"], ["1 m", "0 m"], ["0 m", "1 m"]]', ("a polygon has no width",)),
+        ('shape = "rectangle"\nwidth = "1 m"\nheight = "1 m"\nvertices = []', ("has no vertices",)),
         ('shape = "round"\ndiameter = "1 m"\ncircumference = "3 m"', ("both",)),
         ('shape = "rectangle"\nwidth = "1 m"', ("no height",)),
         ('shape = "round"\ndiameter = "1 m"\nwidth = "1 m"', ("no width",)),
         ('shape = "rectangle"\nwidth = "1 m"\nheight = "1 m"\ndiameter = "1 m"', ("no diameter",)),
         ('shape = "round"\ndiameter = "1 m"\nwall_thickness = "5 mm"', ("wall_thickness",)),
-        ('shape = "round"\ncircumference = "1 m"\nwall_thickness = "200 mm"', ("thinner",)),
+        ('shape = "round"\ncircumference = "1 m"\nwall_thickness = "200 mm"', ("nothing is left open",)),
         ('shape = "round"\ndiameter = "-1 m"', ("greater than zero",)),
         ('shape = "round"\ndiameter = "1 m"\nupstream = "-1 m"', ("zero or more",)),
         ('diameter = "1 m"', ("no shape",)),
@@ -398,7 +408,7 @@ def test_corrections(write):
 
 
 def test_an_unknown_rule_names_the_nearest(write):
-    refuse(write(layout='rule = "log-tchebychef"\nlines = 2\npoints = 6'), JobError, 'perhaps "log-tchebycheff"')
+    refuse(write(layout='rule = "log-tchebychef"\nlines = 2\npoints = 6'), LayoutError, 'perhaps rule = "log-tchebycheff"')
 
 
 @pytest.mark.parametrize("body", ['rule = "equal-area"\npoints = 6', 'rule = "equal-area"\nlines = 2', "lines = 2\npoints = 6"])
@@ -457,13 +467,19 @@ def test_custom_points_from_the_readings(write):
     ("body", "words"),
     [
         ('rule = "custom"\ndepths = ["40 mm"]\nweights = [0.5, 0.5]\nlines = 2', ("1 depths and 2 weights",)),
-        ('rule = "custom"\ndepths = ["40 mm"]', ("weights",)),
-        ('rule = "custom"\npoints = [{depth = "4 mm"}]', ("no weight",)),
+        ('rule = "custom"\ndepths = ["40 mm"]', ("no lines",)),
+        ('rule = "custom"\ndepths = ["40 mm"]\nlines = 2\nweights = "are"', ('"area", "velocity-area"',)),
+        ('rule = "custom"\npoints = [{depth = "4 mm", weight = 0.5}, {depth = "9 mm"}]', ("for every point, or for none",)),
+        ('rule = "custom"\nweights = "area"\npoints = [{depth = "4 mm", weight = 0.5}]', ("one of the two",)),
+        ('rule = "custom"\nweights = [1.0]\npoints = [{depth = "4 mm", weight = 0.5}]', ("only with depths",)),
         ('rule = "custom"\npoints = [{depht = "4 mm", weight = 1.0}]', ("perhaps depth",)),
         ('rule = "custom"\npoints = [{weight = 1.0}]', ("without a place",)),
         ('rule = "custom"\npoints = [4]', ("a table",)),
-        ('rule = "equal-area"\nlines = 2\npoints = 6\nweights = [1.0]', ('only with rule = "custom"',)),
-        ('rule = "custom"', ("without weights",)),
+        ('rule = "equal-area"\nlines = 2\npoints = 6\nweights = [1.0]', ("only with depths",)),
+        ('rule = "equal-area"\nlines = 2\npoints = 6\nwall_exponent = 7', ("velocity-area",)),
+        ('rule = "equal-area"\nlines = 2\npoints = 6\nweights = "velocity-area"\nwall_exponent = 3', ("4 (rough) to 14",)),
+        ('rule = "equal-area"\nlines = 2\npoints = 6\nwall_distance = "-1 mm"', ("zero or more",)),
+        ('rule = "custom"', ("without a place",)),
         ('rule = "custom"\npoints = [{depth = 4, weight = 1.0}]', ("no unit",)),
     ],
 )

@@ -190,7 +190,7 @@ def test_custom_points():
 
 
 @pytest.mark.parametrize(("change", "message"), [
-    ({"depth": [1.2, 0.5]}, "outside"), ({"depth": [0.5, 0.5]}, "one place"), ({"weight": [1, -1]}, "weight"), ({"weight": None}, "no weights"),
+    ({"depth": [1.2, 0.5]}, "outside"), ({"depth": [0.5, 0.5]}, "one place"), ({"weight": [1, -1]}, "weight"), ({"weight": [1]}, "weight"),
     ({"depth": None}, "no places"), ({"point": [1, 1]}, "twice"), ({"weight": [1, math.nan]}, "weight"),
 ])
 def test_custom_points_that_cannot_be(change, message):
@@ -218,7 +218,7 @@ def test_rectangular_log_tchebycheff_that_does_not_exist(points):
 
 
 @pytest.mark.parametrize(("change", "message"), [
-    ({"digits": "printd"}, "exact, printed"), ({"shape": "oval"}, "round, rectangle"), ({"along": "heigth"}, "height, width"),
+    ({"digits": "printd"}, "exact, printed"), ({"shape": "oval"}, "round, ellipse, rectangle"), ({"along": "heigth"}, "height, width"),
     ({"lines": 0}, "at least 1"), ({"width": 0.0}, "diameter"), ({"width": math.nan}, "diameter"), ({"width": math.inf}, "diameter"),
     ({"shape": "rectangle", "height": -1.0}, "a height of"), ({"wall_distance": math.nan}, "wide enough"), ({"wall_distance": -0.01}, "wide enough"),
     ({"wall_distance": 0.5}, "wide enough"), ({"angles": [0.0, 3.1415926]}, "same angle"), ({"angles": [0.0, math.nan]}, "no number"),

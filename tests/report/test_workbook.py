@@ -25,6 +25,9 @@ HOT = {"temperature": "150 degC"}
 REFERENCE = {"temperature": "20 degC", "pressure": "101325 Pa"}
 UNCERTAIN = {"coefficient": "±1 %", "differential_pressure": {"repeatability": "2 % (df=5)", "calibration": "1 % + 0.5 Pa"}, "layout": "1 %"}
 MISSING = jobs.READINGS.replace("A,2,60", "A,2,obstructed").replace("B,3,63", "B,3,-4").replace("B,4,52", "B,4,<10")
+OVAL = "line,point,differential_pressure [Pa]\n" + "".join(f"{n},{k},{40 + 3 * k}\n" for n in "ABCDE" for k in (1, 2))
+TWENTY_SIX = "line,point,differential_pressure [Pa]\n" + "".join(
+    f"{n},{k},{40 + 2 * k}\n" for n, count in zip("ABCD", (7, 6, 6, 7), strict=True) for k in range(1, count + 1))
 # Every branch of the working: gas, humidity, method, rules for readings, corrections, reference, uncertainty.
 VARIANTS = {
     "given_density": ({}, jobs.READINGS),
@@ -52,6 +55,19 @@ VARIANTS = {
         f"{n},{k},{50 + k},{3 * k},{-10 - k},{70 + k}\n" for n in "AB" for k in (1, 2, 3, 4))),
     "rectangle": ({"plane": {"shape": "rectangle", "diameter": None, "width": "24 in", "height": "16 in", "port_depth": "2 in"},
                    "layout": {"lines": 2, "points": 4, "along": "width"}, "job": {"units": "us"}}, jobs.READINGS),
+    "ellipse": ({"plane": {"shape": "ellipse", "diameter": None, "width": "1.4 m", "height": "32 in", "lining": "20 mm", "deposit": "2 mm"},
+                 "uncertainty": UNCERTAIN | {"dimensions": "±3 mm"}}, jobs.READINGS),
+    "round_lined": ({"plane": {"diameter": ["1 m", "1.002 m", "1.001 m", "39.4 in"], "deposit": "3 mm"}}, jobs.READINGS),
+    "circumference_lined": ({"plane": {"diameter": None, "circumference": "3.2 m", "wall_thickness": "4 mm", "lining": "1 in"}}, jobs.READINGS),
+    "flat_oval": ({"plane": {"shape": "flat-oval", "diameter": None, "width": "1 m", "height": "0.7 m"}}, jobs.READINGS),
+    "flat_oval_up": ({"plane": {"shape": "flat-oval", "diameter": None, "width": "0.4 m", "height": "1.3 m", "lining": "1 cm"},
+                      "layout": {"lines": 2, "points": 2}}, OVAL),
+    "annulus": ({"plane": {"shape": "annulus", "core": "0.4 m", "deposit": "1 mm"}, "layout": {"angles": ["10 deg", "200 deg"]}}, jobs.READINGS),
+    "annulus_gap": ({"plane": {"shape": "annulus", "diameter": None, "gap": ["0.3 m", "0.301 m"], "core_circumference": "50 in"}}, jobs.READINGS),
+    "lined_rectangle": ({"plane": {"shape": "rectangle", "diameter": None, "width": "22 in", "height": "15 in", "lining": "1 in"}}, jobs.READINGS),
+    "twenty_six": ({"plane": {"shape": "rectangle", "diameter": None, "width": "1.2 m", "height": "0.8 m"},
+                    "layout": {"rule": "log-linear-26", "lines": None, "points": None}}, TWENTY_SIX),
+    "general": ({"layout": {"rule": "general", "points": 3}}, jobs.READINGS.replace("A,4,48\n", "").replace("B,4,52\n", "")),
     "total_and_static": ({}, "line,point,total_pressure [Pa],static [Pa]\n" + "".join(f"{n},{k},{250 + k},{200}\n" for n in "AB" for k in (1, 2, 3, 4))),
 }
 

@@ -9,6 +9,7 @@ import click
 from traverse._version import __version__
 from traverse.cli.plan_command import plan
 from traverse.cli.reduce_command import reduce
+from traverse.cli.study_command import study
 from traverse.errors import TraverseError
 
 
@@ -36,3 +37,4 @@ def main() -> None:
 
 main.add_command(plan)
 main.add_command(reduce)
+main.add_command(study)

@@ -10,11 +10,12 @@ import click
 @click.command()
 @click.argument("job", type=click.Path(path_type=Path))
 @click.option("--figure", type=click.Path(path_type=Path), help="Draw the section with its points into this PNG, SVG or PDF.")
+@click.option("--json", "json_to", metavar="FILE|-", help="The plan in SI units as JSON; - for standard output.")
 @click.option("--force", is_flag=True, help="Overwrite an existing output.")
 @click.option("--explain", is_flag=True, help="Print each decision that was taken and the setting that would change it.")
 @click.option("-q", "--quiet", is_flag=True, help="No notes on the error stream.")
-def plan(job: Path, figure: Path | None, force: bool, explain: bool, quiet: bool) -> None:
-    """Print where to measure: points, weights, positions and the marks on the probe.
+def plan(job: Path, figure: Path | None, json_to: str | None, force: bool, explain: bool, quiet: bool) -> None:
+    """Print where to measure, the marks on the probe, the pressures to expect, the gauge and what to take along.
 
     JOB is a job file; readings are not needed yet.
 
@@ -23,18 +24,32 @@ def plan(job: Path, figure: Path | None, force: bool, explain: bool, quiet: bool
     from traverse import files
     from traverse.importers import load_setup
     from traverse.planning import plan as make_plan
-    from traverse.report import text
+    from traverse.report import plan_text, text
 
     setup = load_setup(job)
-    if figure is not None:
-        files.claim(figure, [job], force=force)
+    read = [job, *(job.parent / source.name for source in setup.sources[1:])]
+    json_file = None if json_to in {None, "-"} else Path(str(json_to))
+    for target in (figure, json_file):
+        if target is not None:
+            files.claim(target, read, force=force)
     planned = make_plan(setup)
-    click.echo(text.plan(planned))
-    if figure is not None:
-        from traverse.report import figures
+    if json_to is not None:
+        from traverse.report import plan_json
 
-        figures.write(figures.plan(planned), figure)
-        if not quiet:
-            click.echo(f"wrote {figure}", err=True)
+        content = plan_json.text(planned)
+        if json_file is None:
+            click.echo(content)
+        else:
+            with files.atomic(json_file) as stream:
+                stream.write(f"{content}\n".encode())
+    if json_to != "-":
+        click.echo(plan_text.plan(planned))
+    if figure is not None:
+        from traverse.report import figures, plan_figure
+
+        figures.write(plan_figure.plan(planned), figure)
+    for target in (json_file, figure):
+        if target is not None and not quiet:
+            click.echo(f"wrote {target}", err=True)
     if explain:
         click.echo(text.findings(planned.findings, everything=True), err=True)

@@ -1,4 +1,4 @@
-"""[plane], [pitot], [conditions], [reference], [design] and [corrections]: tables to records."""
+"""[plane], [pitot], [gauge], [conditions], [reference], [design] and [corrections]: tables to records."""
 
 from __future__ import annotations
 
@@ -7,9 +7,10 @@ from typing import Literal, cast
 
 from traverse import tables
 from traverse.errors import JobError
+from traverse.importers import _section
 from traverse.importers._schema import Table
 from traverse.methods import Method
-from traverse.model import Conditions, Corrections, Design, Finding, Pitot, Plane, Reference, Section
+from traverse.model import Conditions, Corrections, Design, Finding, Gauge, Pitot, Plane, Reference, Section
 from traverse.physics.atmosphere import pressure_at_altitude
 from traverse.units import UNITS, Stated, parse
 
@@ -17,54 +18,32 @@ from traverse.units import UNITS, Stated, parse
 # than any mine; and gauge pressures that look like absolute ones. Common practice, no source.
 STATION = (30e3, 120e3)
 LOOKS_ABSOLUTE = (80e3, 115e3)
-_DIMENSIONS = ("diameter", "circumference", "wall_thickness", "width", "height")
+# Exponents of a turbulent profile: 5 to 10 are met in pipes (common practice), beyond these it is no profile of a duct.
+PROFILES = (3.0, 20.0)
 
 
-def plane(table: Table) -> Plane:
-    """Return the measuring plane."""
-    table.need("shape", '"round" or "rectangle"')
-    shape = cast("Literal['round', 'rectangle']", table.text("shape"))
-    stated = {name: table.stated(name) for name in _DIMENSIONS if name in table}
-    dimensions = {name: value for name, value in stated.items() if value is not None}
-    _fitting(table, shape, dimensions)
-    for key in ("upstream", "downstream", "port_depth", "wall_thickness"):
-        length = table.stated(key)
-        if length is not None and length.value < 0:
-            raise JobError(f"{length.text!r}", where=table.where(key), expected="a length of zero or more")
+def plane(table: Table) -> tuple[Plane, tuple[Finding, ...]]:
+    """Return the measuring plane, and what there is to say about how its section was measured."""
+    section, findings = _section.build(table)
+    ports = _ports(table)
+    for key, lengths in (("upstream", (table.stated("upstream"),)), ("downstream", (table.stated("downstream"),)), ("port_depth", ports)):
+        for length in lengths:
+            if length is not None and length.value < 0:
+                raise JobError(f"{length.text!r}", where=table.where(key), expected="a length of zero or more")
+    alike = len({length.value for length in ports}) == 1
     return Plane(
-        section=Section(shape=shape, dimensions=dimensions), upstream=table.stated("upstream"),
-        downstream=table.stated("downstream"), port_depth=table.stated("port_depth"),
+        section=section, upstream=table.stated("upstream"), downstream=table.stated("downstream"),
+        port_depth=ports[0] if alike else None, port_depths=ports if isinstance(table.get("port_depth"), tuple) else (),
         wall=cast("Literal['metal', 'brick'] | None", table.text("wall")),
-    )
+    ), findings
 
 
-def _fitting(table: Table, shape: str, dimensions: dict[str, Stated]) -> None:
-    """Raise unless the stated dimensions are exactly those of the shape."""
-    wanted = "diameter or circumference" if shape == "round" else "width and height"
-    allowed = {"diameter", "circumference", "wall_thickness"} if shape == "round" else {"width", "height"}
-    for name in dimensions:
-        if name not in allowed:
-            raise JobError(f"a {shape} section has no {name}", where=table.where(name), expected=wanted)
-    if shape == "rectangle":
-        for name in ("width", "height"):
-            table.need(name, wanted)
-        return
-    if ("diameter" in dimensions) == ("circumference" in dimensions):
-        found = "both diameter and circumference" if "diameter" in dimensions else "neither diameter nor circumference"
-        raise JobError(found, where=table.name, expected="exactly one of diameter | circumference")
-    if "wall_thickness" not in dimensions:
-        return
-    if "diameter" in dimensions:
-        raise JobError(
-            "wall_thickness beside a diameter", where=table.where("wall_thickness"),
-            expected="the inside diameter alone, or circumference (outside) with wall_thickness",
-        )
-    around, wall = dimensions["circumference"].value, dimensions["wall_thickness"].value
-    if around / 3.141592653589793 <= 2 * wall:
-        raise JobError(
-            f"a wall of {dimensions['wall_thickness'].text}", where=table.where("wall_thickness"),
-            expected="a wall thinner than half the diameter",
-        )
+def _ports(table: Table) -> tuple[Stated, ...]:
+    """Return the stated port depths: none, one for all, or one a line."""
+    found = table.get("port_depth")
+    if found is None:
+        return ()
+    return found if isinstance(found, tuple) else (found,)
 
 
 def units_system(table: Table, section: Section) -> tuple[Literal["si", "us"], tuple[Finding, ...]]:
@@ -105,7 +84,8 @@ def pitot(table: Table, method: Method) -> tuple[Pitot, tuple[Finding, ...]]:
     if stem is not None and not stem.value > 0:
         raise JobError(f"{stem.text!r}", where=table.where("stem"), expected="a diameter above zero")
     return Pitot(
-        type=cast("Literal['pitot-static', 's-type']", kind), coefficient=coefficient, coefficient_source=source, stem=stem
+        type=cast("Literal['pitot-static', 's-type']", kind), coefficient=coefficient, coefficient_source=source, stem=stem,
+        head_offset=table.stated("head_offset"),
     ), tuple(findings)
 
 
@@ -216,17 +196,45 @@ def reference(table: Table) -> Reference | None:
     )
 
 
-def design(table: Table) -> Design | None:
-    """Return the design flow, None where the job states none."""
+def design(table: Table, section: Section) -> Design | None:
+    """Return the design flow, or the one that a mean velocity over the section is; None where the job states neither."""
     if not table.values:
         return None
-    table.need("actual_flow", 'the design flow at the conditions of the plane, such as "24000 cfm"')
-    flow = table.stated("actual_flow")
+    flow, speed = table.stated("actual_flow"), table.stated("velocity")
+    if flow is not None and speed is not None:
+        raise JobError("both actual_flow and velocity", where=table.name, expected="exactly one of actual_flow | velocity")
+    if speed is not None:
+        value = speed.value * section.area
+        flow = Stated(value, value, UNITS["m3/s"], f"{speed.text} over the section")
+    if flow is None:
+        table.need("actual_flow", 'the design flow at the conditions of the plane, such as "24000 cfm", or velocity, such as "20 ft/s"')
     assert flow is not None
     if not flow.value > 0:
-        raise JobError(f"{flow.text!r}", where=table.where("actual_flow"), expected="a flow above zero")
-    text = table.text("tolerance")
-    return Design(actual_flow=flow, tolerance=None if text is None else _tolerance(table, text))
+        key, shown = ("actual_flow", flow) if speed is None else ("velocity", speed)
+        raise JobError(f"{shown.text!r}", where=table.where(key), expected="a flow or velocity above zero")
+    text, profile = table.text("tolerance"), table.number("profile")
+    if profile is not None and not PROFILES[0] <= profile <= PROFILES[1]:
+        raise JobError(
+            f"{profile:g}", where=table.where("profile"),
+            expected=f"the exponent n of a profile (wall distance)^(1/n), a number from {PROFILES[0]:g} to {PROFILES[1]:g}",
+        )
+    return Design(actual_flow=flow, tolerance=None if text is None else _tolerance(table, text), velocity=speed, profile=profile)
+
+
+def gauge(table: Table) -> Gauge | None:
+    """Return the gauge that will be used, None where the job states none."""
+    if not table.values:
+        return None
+    found = Gauge(range=table.stated("range"), division=table.stated("division"))
+    for key, stated in (("range", found.range), ("division", found.division)):
+        if stated is not None and not stated.value > 0:
+            raise JobError(f"{stated.text!r}", where=table.where(key), expected="a pressure above zero")
+    if found.range is not None and found.division is not None and found.division.value > found.range.value:
+        raise JobError(
+            f"a division of {found.division.text!r} on a range of {found.range.text!r}", where=table.name,
+            expected="a division that is a part of the range",
+        )
+    return found
 
 
 def _tolerance(table: Table, text: str) -> Stated:
@@ -261,7 +269,10 @@ def _wall_factor(table: Table, measured: Plane) -> tuple[float | None, str, tupl
     if value != "default":
         raise JobError(f"{value!r}", where=where, expected='a bare number, or "default"')
     if measured.section.shape != "round":
-        raise JobError('"default" in a rectangle', where=where, expected="a round section; the default is for round stacks only")
+        raise JobError(
+            f'"default" in a section of shape {measured.section.shape}', where=where,
+            expected="a round section; the default is for round stacks only",
+        )
     if measured.wall is None:
         raise JobError('"default" without [plane] wall', where=where, expected='[plane] wall = "metal" or "brick"')
     table_2h = tables.load("wall_factor")

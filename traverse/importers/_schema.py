@@ -12,8 +12,8 @@ from traverse.errors import JobError, UnitError, nearest
 from traverse.units import Stated, parse
 
 Kind = Literal[
-    "text", "choice", "flag", "number", "count", "date", "texts", "quantity", "quantities", "numbers", "tables", "names",
-    "any",
+    "text", "choice", "flag", "number", "count", "date", "texts", "quantity", "quantities", "quantity or list", "measured",
+    "numbers", "tables", "names", "any",
 ]
 
 
@@ -37,6 +37,7 @@ def _choice(*choices: str, later: tuple[str, ...] = ()) -> Key:
 
 
 TEXT, FLAG, NUMBER, COUNT = Key(kind="text"), Key(kind="flag"), Key(kind="number"), Key(kind="count")
+MEASURED = Key(kind="measured", dimension="length")
 FRACTION, LENGTH, TEMPERATURE, PRESSURE = _q("fraction"), _q("length"), _q("temperature"), _q("pressure")
 
 GAS: Mapping[str, Key] = {
@@ -53,7 +54,7 @@ CONDITIONS: Mapping[str, Key] = {
 }
 PITOT: Mapping[str, Key] = {
     "type": _choice("pitot-static", "s-type", later=("two-dimensional", "three-dimensional")), "coefficient": NUMBER,
-    "stem": LENGTH,
+    "stem": LENGTH, "head_offset": LENGTH,
 }
 # Canonical columns of the readings and the dimension of their unit ('' for labels and words).
 COLUMNS: Mapping[str, str] = {
@@ -67,16 +68,20 @@ SCHEMA: Mapping[str, Mapping[str, Key]] = {
         "title": TEXT, "date": Key(kind="date"), "method": TEXT, "units": _choice("si", "us"),
     },
     "plane": {
-        "shape": _choice("round", "rectangle", later=("flat-oval", "annulus", "polygon")),
-        "diameter": LENGTH, "circumference": LENGTH, "wall_thickness": LENGTH, "width": LENGTH, "height": LENGTH,
-        "upstream": LENGTH, "downstream": LENGTH, "port_depth": LENGTH, "wall": _choice("metal", "brick"),
+        "shape": _choice("round", "ellipse", "rectangle", "flat-oval", "annulus", "polygon"),
+        "diameter": MEASURED, "circumference": MEASURED, "wall_thickness": LENGTH, "width": MEASURED, "height": MEASURED,
+        "core": MEASURED, "core_circumference": MEASURED, "gap": MEASURED, "vertices": Key(kind="any"),
+        "lining": LENGTH, "deposit": LENGTH,
+        "upstream": LENGTH, "downstream": LENGTH, "port_depth": Key(kind="quantity or list", dimension="length"),
+        "wall": _choice("metal", "brick"),
     },
     "layout": {
         "rule": TEXT, "lines": COUNT, "points": Key(kind="any"), "angles": Key(kind="quantities", dimension="angle"),
         "along": _choice("height", "width"), "names": Key(kind="texts"),
         "order": _choice("inward", "outward", "alternate"), "digits": _choice("exact", "printed"),
-        "depths": Key(kind="quantities", dimension="length"), "weights": Key(kind="numbers"), "file": TEXT,
-        "positions": Key(kind="quantities", dimension="length"),
+        "depths": Key(kind="quantities", dimension="length"), "weights": Key(kind="any"), "file": TEXT,
+        "positions": Key(kind="quantities", dimension="length"), "radii": FLAG, "wall_distance": LENGTH,
+        "wall_exponent": Key(kind="any"),
     },
     "pitot": PITOT,
     "gas": GAS,
@@ -85,17 +90,17 @@ SCHEMA: Mapping[str, Mapping[str, Key]] = {
     "readings": {
         "file": TEXT, "form": _choice("long", later=("matrix", "log")), "decimal": _choice(",", "."),
         "negative": _choice("method", "zero", "signed", "omit"),
-        "missing": _choice("error", "neighbour", "omit", later=("field",)),
+        "missing": _choice("error", "neighbour", "field", "omit"),
         "below": _choice("half", "zero", "limit"), "blank": _choice("as above"), "repeats": _choice("mean"),
         "meter_density": _q("density"), "columns": Key(kind="names"), "units": Key(kind="names"),
     },
     "uncertainty": {},
-    "design": {"actual_flow": _q("flow", basis="actual"), "tolerance": TEXT},
+    "design": {"actual_flow": _q("flow", basis="actual"), "velocity": _q("velocity"), "tolerance": TEXT, "profile": NUMBER},
+    "gauge": {"range": PRESSURE, "division": PRESSURE},
     "corrections": {"wall_factor": Key(kind="any"), "turbulence": FRACTION, "blockage": FLAG},
 }
 # Keys of the contract that this version does not act on: refused, with what there is instead.
 LATER: Mapping[str, str] = {
-    "plane.core": "shapes round and rectangle", "plane.vertices": "shapes round and rectangle",
     "pitot.calibration": 'coefficient, a number such as 0.84',
     "readings.sheet": "text files: CSV, TSV or semicolon-separated", "readings.matrix": 'long tables, form = "long"',
     "corrections.displacement": "wall_factor, turbulence and blockage",
@@ -191,10 +196,15 @@ def _value(where: str, key: Key, value: Any) -> Any:
     match key.kind:
         case "quantity":
             return quantity(value, key.dimension, where, basis=key.basis)
-        case "quantities":
+        case "quantity or list" if not isinstance(value, list):
+            return quantity(value, key.dimension, where, basis=key.basis)
+        case "quantities" | "quantity or list":
             return tuple(
                 quantity(entry, key.dimension, f"{where}[{place}]") for place, entry in enumerate(_list(where, value), 1)
             )
+        case "measured":
+            several = value if isinstance(value, list) and value else [value]
+            return tuple(quantity(entry, key.dimension, where) for entry in several)
         case "choice":
             return _of_choice(where, key, value)
         case "text":

@@ -48,7 +48,8 @@ def load(path: Path, readings: ReadReadings, points: ReadPoints) -> Job:
     return Job(
         title=_title(document), date=document.table("job").get("date"), method=frame.method.id, units=frame.units,
         plane=frame.plane, layout=frame.layout, runs=runs, reference=_plane.reference(document.table("reference")),
-        uncertainties=_uncertainty.build(document.uncertainty, runs), design=_plane.design(document.table("design")),
+        uncertainties=_uncertainty.build(document.uncertainty, runs),
+        design=_plane.design(document.table("design"), frame.plane.section),
         corrections=corrections, policies=_policies(document), sources=(*frame.sources, table.source),
         findings=tuple(dict.fromkeys((*frame.findings, *table.findings, *correction_findings, *run_findings))),
     )
@@ -75,7 +76,8 @@ def load_setup(path: Path, readings: ReadReadings, points: ReadPoints) -> Setup:
     return Setup(
         title=_title(document), date=document.table("job").get("date"), method=frame.method.id, units=frame.units,
         plane=frame.plane, layout=frame.layout, pitot=pitot, gas=gas, conditions=conditions,
-        design=_plane.design(document.table("design")), sources=frame.sources, findings=tuple(dict.fromkeys(findings)),
+        design=_plane.design(document.table("design"), frame.plane.section), sources=frame.sources,
+        findings=tuple(dict.fromkeys(findings)), gauge=_plane.gauge(document.table("gauge")),
     )
 
 
@@ -90,7 +92,8 @@ def _frame(document: Document, table: ReadingTable | None, readings: ReadReading
             level="note", topic="method", setting="[job] method", message='method is not stated; "exact" was taken.'
         ))
     method = methods.get(head.text("method") or "exact")
-    plane = _plane.plane(document.table("plane"))
+    plane, found = _plane.plane(document.table("plane"))
+    findings += found
     units, found = _plane.units_system(head, plane.section)
     findings += found
     sources = [document.source]
@@ -117,7 +120,7 @@ def _custom(
     name = layout_table.text("file")
     if name is not None:
         source, records = points(document.beside(name), name)
-        return _layout.custom(layout_table, plane.section, _collected(records, name)), [source]
+        return _layout.custom(layout_table, plane.section, _collected(records)), [source]
     if "file" not in document.table("readings"):
         raise JobError(
             "custom points, but none are given", where="[layout]",
@@ -125,16 +128,12 @@ def _custom(
         )
     table = table or readings(document)
     first = next(iter(table.runs.values()))
-    return _layout.custom(layout_table, plane.section, _collected(first, table.source.name)), []
+    return _layout.custom(layout_table, plane.section, _collected(first)), []
 
 
-def _collected(records: list[Record] | tuple[Record, ...], name: str) -> _layout.Points:
+def _collected(records: list[Record] | tuple[Record, ...]) -> _layout.Points:
     """Return the points that rows of a table give."""
     found = _layout.Points()
-    if not any("weight" in record.value for record in records):
-        raise JobError(
-            "custom points without weights", where=name, expected="a weight column: the share of the area of each point"
-        )
     for record in records:
         line = record.line or "A"
         number = point_number(record) if record.point else found.line.count(line) + 1
@@ -155,7 +154,7 @@ def _policies(document: Document) -> Policies:
     table = document.table("readings")
     return Policies(
         negative=cast("Literal['method', 'zero', 'signed', 'omit']", table.text("negative") or "method"),
-        missing=cast("Literal['error', 'neighbour', 'omit']", table.text("missing") or "error"),
+        missing=cast("Literal['error', 'neighbour', 'field', 'omit']", table.text("missing") or "error"),
         below=cast("Literal['half', 'zero', 'limit']", table.text("below") or "half"),
     )
 

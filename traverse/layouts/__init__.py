@@ -4,27 +4,38 @@ from __future__ import annotations
 
 import pkgutil
 from collections.abc import Sequence
+from dataclasses import replace
 from functools import lru_cache
 from importlib import import_module
 
 import numpy as np
 
 from traverse.errors import LayoutError, nearest
+from traverse.layouts import _scheme
 from traverse.layouts._base import (
     Array,
+    Extent,
+    Frame,
     Placement,
     Rule,
     Term,
     checked_angles,
     checked_names,
     checked_size,
+    diameter_at,
     diameters,
+    line_names,
     move_off_wall,
     one_of,
 )
 from traverse.layouts._custom import place_custom
+from traverse.layouts._integration import fitted_exponent, integrable, velocity_area
+from traverse.physics import sections
 
-__all__ = ["Placement", "Rule", "Term", "fractions", "place", "place_custom", "rules"]
+__all__ = [
+    "Placement", "Rule", "Term", "fitted_exponent", "fractions", "integrable", "line_names", "place", "place_custom", "rule", "rules",
+    "velocity_area",
+]
 
 
 @lru_cache(maxsize=1)
@@ -53,7 +64,7 @@ def rule(name: str) -> Rule:
     return rules()[name]
 
 
-def fractions(name: str, shape: str, points: int, digits: str = "exact") -> tuple[Array, Array]:
+def fractions(name: str, shape: str, points: int, digits: str = "exact", diameters: float = 2.0) -> tuple[Array, Array]:
     """Return a rule's points on one line: fractions of its length from the wall at the port, and weights that sum to 1.
 
     Raises
@@ -61,12 +72,13 @@ def fractions(name: str, shape: str, points: int, digits: str = "exact") -> tupl
     LayoutError
         If the rule does not exist for what is asked.
     """
-    return rule(name).fractions(shape, points, digits)
+    return rule(name).fractions(shape, points, digits, diameters)
 
 
 def place(
-    name: str, *, shape: str, width: float, height: float, lines: int, points: int, angles: Sequence[float] | None = None,
-    along: str = "height", names: Sequence[str] | None = None, digits: str = "exact", wall_distance: float = 0.0,
+    name: str, *, shape: str, width: float, height: float, lines: int = 0, points: int = 0,
+    angles: Sequence[float] | None = None, along: str = "height", names: Sequence[str] | None = None, digits: str = "exact",
+    wall_distance: float = 0.0, radii: bool = False, core: float = 0.0,
 ) -> Placement:
     """Return the points of a rule in a section.
 
@@ -75,9 +87,9 @@ def place(
     name : str
         The rule.
     shape, width, height
-        ``round`` or ``rectangle``, and its inside size. [m]
+        The section and its inside size. [m]
     lines, points : int
-        Diameters of a round section or lines of a rectangle, and points on each.
+        Diameters of a round section, radii of a ring or lines of a rectangle, and points on each. 0 where the rule fixes them.
     angles : sequence, optional
         Port angles of the diameters, counter-clockwise from +x; equally spaced from 0 by default. [rad]
     along : {'height', 'width'}
@@ -90,6 +102,10 @@ def place(
     wall_distance : float
         Round sections only: no point nearer to the wall; it is moved out, and points that then coincide count twice.
         Points of a rectangle stay where they are. [m]
+    radii : bool
+        Round sections: each line runs from its port to the centre only, with ``points`` on it.
+    core : float
+        Diameter of the core of an annulus. [m]
 
     Raises
     ------
@@ -99,29 +115,92 @@ def place(
     chosen = rule(name)
     checked_size(shape, width, height)
     one_of("along", along, ("height", "width"), "[layout] along")
+    chosen.refuse_shape(shape)
+    if radii and shape not in ("round", "ellipse"):
+        raise LayoutError("radii", where="[layout] radii", expected="radii only in a round section; the lines of an annulus are radii")
+    if shape in chosen.schemes:
+        if angles is not None or digits == "printed":
+            raise LayoutError(
+                "angles" if angles is not None else 'digits = "printed"', where="[layout]", expected=f"neither with {chosen.name} here"
+            )
+        return _scheme.place(chosen, Frame(shape=shape, width=width, height=height, lines=lines, points=points, along=along), names)
+    lines = lines or next(iter(chosen.line_counts.get(shape, ())), 0)
+    _refuse_counts(chosen, shape, lines, points)
+    labels = checked_names(names, lines)
+    if shape == "rectangle":
+        if angles is not None:
+            raise LayoutError("angles for a rectangle", where="[layout] angles", expected="angles only for a round section")
+        placed = _rectangle(chosen, width, height, points, along, labels, digits)
+    elif shape == "annulus":
+        placed = _ring(chosen, width, core, points, checked_angles(angles, lines, 2.0 * np.pi), labels)
+    else:
+        turned = checked_angles(angles, lines, 2.0 * np.pi if radii else np.pi)
+        placed = _round(chosen, (width, height), points, turned, labels, digits, wall_distance, radii=radii)
+    return replace(placed, notes=placed.notes + _remarks(chosen, shape, width, height))
+
+
+def _refuse_counts(chosen: Rule, shape: str, lines: int, points: int) -> None:
+    """Refuse numbers of lines and points which the rule does not have."""
     if lines < 1:
         raise LayoutError(f"{lines} lines", where="[layout] lines", expected="at least 1")
-    labels = checked_names(names, lines)
-    if shape == "round":
-        return _round(chosen, width, points, checked_angles(angles, lines), labels, digits, wall_distance)
-    if angles is not None:
-        raise LayoutError("angles for a rectangle", where="[layout] angles", expected="angles only for a round section")
-    return _rectangle(chosen, width, height, points, along, labels, digits)
+    allowed = chosen.line_counts.get(shape, ())
+    if allowed and lines not in allowed:
+        raise LayoutError(
+            f"{lines} lines", where="[layout] lines", expected=f"{' or '.join(map(str, allowed))} lines for {chosen.name}"
+        )
+    total, least, multiple = lines * points, chosen.least.get(shape, 1), chosen.multiple.get(shape, 1)
+    if points > 0 and (total < least or total % multiple):
+        raise LayoutError(
+            f"{lines} lines of {points} points, {total} in all", where="[layout] points",
+            expected=f"at least {least} points in all for {chosen.name}" + (f", a multiple of {multiple}" if multiple > 1 else ""),
+        )
+
+
+def _remarks(chosen: Rule, shape: str, width: float, height: float) -> tuple[str, ...]:
+    if chosen.remarks is None:
+        return ()
+    size = {"diameter": width} if shape == "round" else {"width": width, "height": height}
+    hydraulic = float(sections.hydraulic_diameter(shape, size))
+    return chosen.remarks(Extent(shape=shape, width=width, height=height, hydraulic_diameter=hydraulic))
 
 
 def _round(
-    chosen: Rule, width: float, points: int, angles: Array, labels: tuple[str, ...], digits: str, least: float
+    chosen: Rule, size: tuple[float, float], points: int, angles: Array, labels: tuple[str, ...], digits: str, least: float, *,
+    radii: bool,
 ) -> Placement:
-    fraction, share = chosen.fractions("round", points, digits)
     lines = len(labels)
-    depth, moved = move_off_wall(fraction * width, width, least)
-    depths, shares = np.tile(depth, lines), np.tile(share / lines, lines)
-    x, y = diameters(width, depths, np.repeat(angles, points))
+    fraction, share = _on_radius(chosen, points, digits, lines) if radii else chosen.fractions("round", points, digits, float(lines))
+    length = np.repeat(diameter_at(*size, angles), points)
+    depths, moved = move_off_wall(np.tile(fraction, lines) * length, length, least)
+    x, y = diameters(length, depths, np.repeat(angles, points))
     notes: tuple[str, ...] = ()
     if moved.any():
-        notes = (f"{int(moved.sum())} points on each line moved out to {least * 1000:.1f} mm from the wall; "
+        notes = (f"{int(moved.sum()) // lines} points on each line moved out to {least * 1000:.1f} mm from the wall; "
                  "where two fall together both are read and both count",)
-    return _placement(chosen, x, y, depths, shares, labels, points, tuple(np.tile(moved, lines).tolist()), notes, digits)
+    return _placement(chosen, x, y, depths, np.tile(share / lines, lines), labels, points, tuple(moved.tolist()), notes, digits)
+
+
+def _on_radius(chosen: Rule, points: int, digits: str, lines: int) -> tuple[Array, Array]:
+    """Return the points of a rule from the wall to the centre: the first half of a diameter, with the centre where it has one."""
+    centred = chosen.round_by_lines is not None
+    fraction, share = chosen.fractions("round", 2 * points - 1 if centred else 2 * points, digits, lines / 2.0)
+    own = share[:points].copy()
+    if centred:
+        own[-1] /= 2.0
+    return fraction[:points], own / own.sum()
+
+
+def _ring(chosen: Rule, width: float, core: float, points: int, angles: Array, labels: tuple[str, ...]) -> Placement:
+    assert chosen.annulus is not None, "the shape was checked"
+    if not 0.0 < core < width:
+        raise LayoutError(f"a core of {core} m", where="[plane] core", expected="a core narrower than the duct")
+    lines = len(labels)
+    fraction, share = chosen.annulus(points, core / width)
+    depths = np.tile(fraction * (width - core) / 2.0, lines)
+    x, y = diameters(width, depths, np.repeat(angles, points))
+    return _placement(
+        chosen, x, y, depths, np.tile(share / lines, lines), labels, points, (False,) * len(depths), (), "exact"
+    )
 
 
 def _rectangle(

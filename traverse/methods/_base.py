@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 from types import MappingProxyType
 from typing import Literal
 
-from traverse import tables, units
+from traverse import tables
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -94,13 +94,3 @@ def epa_constants(system: str) -> Constants:
         head="inH2O" if inch else "mmH2O",
         velocity="ft/s" if inch else "m/s",
     )
-
-
-def epa_wall_distance(diameter: float, system: str) -> float:
-    """Return the nearest distance of a point from the wall of a round stack. [m]
-
-    Method 1 sections 11.3.1.4, 11.3.2 and 11.3.3.
-    """
-    rule = tables.load("epa_method_2")["wall_distance"][system]
-    limit, large, small = (units.parse(rule[name], "length").value for name in ("limit", "large", "small"))
-    return large if diameter > limit * (1 + 1e-12) else small

@@ -1,7 +1,8 @@
 """EPA Method 2, with the arithmetic of Methods 1, 3 and 4."""
 
 from traverse import tables
-from traverse.methods._base import Method, epa_constants, epa_wall_distance
+from traverse.methods._base import Method, epa_constants
+from traverse.physics import wall_limits
 
 _COMMON = tables.load("epa_method_2")["common"]
 
@@ -17,7 +18,7 @@ METHOD = Method(
         "pitot-static": float(_COMMON["default_pitot_static"]),
     },
     reference={"us": ("68 degF", "29.92 inHg"), "si": ("20 degC", "760 mmHg")},
-    wall_distance=epa_wall_distance,
+    wall_distance=wall_limits.method_1,
     checks=(
         "negative-readings", "gauge-sensitivity", "point-count", "straight-lengths", "saturation", "swirl",
     ),

@@ -16,6 +16,7 @@ from traverse.model._job import (
     Design,
     Distribution,
     Gas,
+    Gauge,
     Humidity,
     Job,
     Pitot,
@@ -28,7 +29,7 @@ from traverse.model._job import (
     Status,
     Uncertainties,
 )
-from traverse.model._place import Layout, Plane, Section
+from traverse.model._place import Layout, Plane, Section, Shape
 
 __all__ = [
     "COMPONENTS",
@@ -44,6 +45,7 @@ __all__ = [
     "Distribution",
     "Finding",
     "Gas",
+    "Gauge",
     "Humidity",
     "Job",
     "Layout",
@@ -55,6 +57,7 @@ __all__ = [
     "Run",
     "Section",
     "Setup",
+    "Shape",
     "Source",
     "Status",
     "Uncertainties",

@@ -12,7 +12,7 @@ import numpy as np
 
 from traverse.errors import DomainError, JobError, ReadingError
 from traverse.model._base import Array, Finding, frozen
-from traverse.model._place import Layout, Plane
+from traverse.model._place import Layout, Plane, check_ports
 from traverse.units import Stated
 
 Status = Literal["read", "missing", "obstructed", "below range", "negative", "over range", "plugged", "excluded"]
@@ -26,12 +26,17 @@ _EMPTY: Mapping[str, Stated] = MappingProxyType({})
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Pitot:
-    """The probe. ``coefficient`` multiplies the velocity: v = C sqrt(2 dp / density)."""
+    """The probe. ``coefficient`` multiplies the velocity: v = C sqrt(2 dp / density).
+
+    ``head_offset`` is how far the place from which marks are counted lies ahead of the sensing openings, such as the end
+    of the probe: every mark is that much farther away.
+    """
 
     type: Literal["pitot-static", "s-type"]
     coefficient: float
     coefficient_source: str
     stem: Stated | None = None
+    head_offset: Stated | None = None
 
     def __post_init__(self) -> None:
         if not 0.3 <= self.coefficient <= 1.5:
@@ -192,10 +197,24 @@ class Uncertainties:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Design:
-    """What the flow should be, for balancing work."""
+    """What the flow should be, for balancing work and for planning.
+
+    ``velocity`` is the mean velocity where the job states that in place of the flow. ``profile`` is the exponent n of the
+    profile (wall distance)^(1/n) that a plan expects.
+    """
 
     actual_flow: Stated
     tolerance: Stated | None
+    velocity: Stated | None = None
+    profile: float | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Gauge:
+    """The gauge that will be used: highest reading and smallest division, as far as stated. [Pa]"""
+
+    range: Stated | None = None
+    division: Stated | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -213,7 +232,7 @@ class Policies:
     """How readings that are not plain numbers enter the mean."""
 
     negative: Literal["method", "zero", "signed", "omit"] = "method"
-    missing: Literal["error", "neighbour", "omit"] = "error"
+    missing: Literal["error", "neighbour", "field", "omit"] = "error"
     below: Literal["half", "zero", "limit"] = "half"
 
 
@@ -242,6 +261,10 @@ class Setup:
     design: Design | None
     sources: tuple[Source, ...]
     findings: tuple[Finding, ...] = ()
+    gauge: Gauge | None = None
+
+    def __post_init__(self) -> None:
+        check_ports(self.plane, self.layout)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -266,6 +289,7 @@ class Job:
     def __post_init__(self) -> None:
         if not self.runs:
             raise ReadingError("no run", where="[readings]", expected="at least one run of readings")
+        check_ports(self.plane, self.layout)
         for run in self.runs:
             lowest = run.conditions.barometric.value + float(np.min(run.readings.static))
             if lowest <= 0:

@@ -1,107 +1,120 @@
-"""Before the first reading: where to measure, where to mark the probe, what pressure to expect."""
+"""Marks on the probe: where they go, and what rounding them to a rule's steps does."""
 
 from __future__ import annotations
 
-import math
 from dataclasses import dataclass
 
 import numpy as np
 
-from traverse import methods
-from traverse.model import Array, Finding, Layout, Setup
-from traverse.physics import gas, moist_air
+from traverse.model import Array, Layout, Section, Setup
+from traverse.physics import sections
+from traverse.planning.expected import relative_velocity
 from traverse.units import UNITS
 
-# Steps of the marks printed for the two systems: a millimetre, a sixteenth of an inch.
+# Steps of the marks in the two systems: a millimetre, a sixteenth of an inch.
 MARK_STEP = {"si": 0.001, "us": UNITS["in"].factor / 16}
+# A line whose points do not lie on one straight line by more than this has no direction [m].
+_STRAIGHT = 1e-6
+# The port of a line lies on the wall, to this part of the width of the section.
+_AT_WALL = 1e-5
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class Plan:
-    """A traverse to be made. Arrays have shape (points,). [m], [Pa]
+class Rounding:
+    """Marks to the nearest step of a rule and what that does. Arrays have shape (points,). [m], [1]
 
-    ``mark`` is the distance on the probe from its head to where it meets the outer face of the port: depth plus port
-    nipple. ``rounded`` is the mark to the nearest step of a rule. ``expected`` is the differential pressure that the
-    mean velocity of the design flow would give, None where the job does not say enough.
+    ``residual`` is the rounded mark less the mark: the head stands so much too deep. ``velocity_error`` is the relative
+    change of the expected velocity that this makes at each point, ``flow_error`` the one of their weighted mean; NaN and
+    None where the direction of the line is not known.
     """
 
-    setup: Setup
-    layout: Layout
+    step: float
     mark: Array
-    rounded: Array
-    mean_velocity: float | None
-    expected: float | None
-    findings: tuple[Finding, ...]
+    residual: Array
+    velocity_error: Array
+    flow_error: float | None
 
 
-def plan(setup: Setup) -> Plan:
-    """Return the plan of a traverse: the points of the layout with the marks on the probe.
+def nipples(setup: Setup) -> Array:
+    """Return the port depth at every point, 0 where none is stated. [m]  Shape (points,)."""
+    plane, layout = setup.plane, setup.layout
+    if plane.port_depths:
+        by_line = {name: stated.value for name, stated in zip(layout.lines, plane.port_depths, strict=True)}
+        return np.array([by_line[name] for name in layout.line])
+    return np.full(layout.size, plane.port_depth.value if plane.port_depth else 0.0)
 
-    Parameters
-    ----------
-    setup : Setup
-        From :func:`traverse.load_setup`; readings are not needed.
+
+def head_offset(setup: Setup) -> float:
+    """Return what is added to every mark because it is not counted from the sensing head. [m]"""
+    return setup.pitot.head_offset.value if setup.pitot and setup.pitot.head_offset else 0.0
+
+
+def rounding(setup: Setup, mark: Array, direction: Array, exponent: float, step: float) -> Rounding:
+    """Return marks rounded to a step, and the error of velocity and flow with the profile that is expected.
+
+    The error at a point is the profile at the head's place less the one at the point, to first order the residual times
+    d ln v / d depth.
     """
-    nipple = setup.plane.port_depth.value if setup.plane.port_depth else 0.0
-    mark = setup.layout.depth + nipple
-    step = MARK_STEP[setup.units]
-    velocity, expected = _expected(setup)
-    findings = setup.findings + setup.layout.findings
-    if setup.plane.port_depth is None:
-        findings += (Finding(
-            level="attention", topic="marks", setting="[plane] port_depth",
-            message="No port depth is stated: the marks are counted from the inner wall. Add the length of the nipple.",
-        ),)
-    return Plan(
-        setup=setup, layout=setup.layout, mark=mark, rounded=np.round(mark / step) * step, mean_velocity=velocity,
-        expected=expected, findings=findings,
+    section, layout = setup.plane.section, setup.layout
+    rounded = np.round(mark / step) * step
+    residual = rounded - mark
+    x, y = layout.x + direction[:, 0] * residual, layout.y + direction[:, 1] * residual
+    at_point = relative_velocity(section.shape, section.size, exponent, layout.x, layout.y)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        error = relative_velocity(section.shape, section.size, exponent, x, y) / at_point - 1.0
+    error = np.where(np.isfinite(error), error, np.nan)
+    share = layout.weight * at_point
+    flow = float(np.sum(share * error) / np.sum(share))
+    return Rounding(
+        step=step, mark=rounded, residual=residual, velocity_error=error, flow_error=flow if np.isfinite(flow) else None
     )
 
 
-def _expected(setup: Setup) -> tuple[float | None, float | None]:
-    """Return the mean velocity of the design flow and the pressure it gives: dp = rho v^2 / (2 C^2)."""
-    if setup.design is None:
-        return None, None
-    velocity = setup.design.actual_flow.value / setup.plane.section.area
-    density = _density(setup)
-    if density is None or setup.pitot is None:
-        return velocity, None
-    return velocity, density * velocity**2 / (2.0 * setup.pitot.coefficient**2)
+def directions(section: Section, layout: Layout) -> Array:
+    """Return the direction from the port inward at every point as a unit vector, shape (points, 2).
+
+    NaN where the points of a line do not lie at their depths along a straight line, so that no mark tells where the head is.
+    """
+    found = np.full((layout.size, 2), np.nan)
+    places = np.column_stack([layout.x, layout.y])
+    for name in layout.lines:
+        index = np.flatnonzero([line == name for line in layout.line])
+        depth, place = layout.depth[index], places[index]
+        first, last = int(np.argmin(depth)), int(np.argmax(depth))
+        span = depth[last] - depth[first]
+        way = (place[last] - place[first]) / span if span > _STRAIGHT else _only_way(section, place[0], float(depth[0]))
+        off = place - (place[first] + np.outer(depth - depth[first], way))
+        port = place[first] - way * depth[first]
+        at_wall = abs(float(sections.wall_distance(section.shape, section.size, *port))) < _AT_WALL * section.width
+        if abs(float(np.hypot(*way)) - 1.0) < 1e-6 and np.all(np.abs(off) < _STRAIGHT) and at_wall:
+            found[index] = way
+    return found
 
 
-def _density(setup: Setup) -> float | None:
-    state, matter = setup.conditions, setup.gas
-    if state is None or matter is None or state.temperature is None:
-        return None
-    if matter.density is not None and matter.density_temperature is None:
-        return matter.density.value
-    temperature = np.array([state.temperature.value])
-    pressure = np.array([state.barometric.value + (state.static.value if state.static else 0.0)])
-    molar_mass = np.array([gas.MOLAR_MASS["air"]])
-    if matter.kind == "given":
-        if matter.molar_mass is None:
-            return None
-        molar_mass = np.array([matter.molar_mass.value])
-    else:
-        water = np.array([matter.water.value if matter.water else 0.0])
-        moisture = moist_air.mole_fraction(matter.humidity, water, temperature, pressure)
-        if matter.kind == "flue-gas":
-            molar_mass = gas.dry_molar_mass(
-                *(np.array([matter.fraction(name)]) for name in
-                  ("oxygen", "carbon_dioxide", "carbon_monoxide", "sulfur_dioxide"))
-            )
-        molar_mass = gas.wet_molar_mass(molar_mass, moisture)
-    density = float(gas.density(pressure, molar_mass, temperature)[0])
-    return density if math.isfinite(density) else None
+def _only_way(section: Section, place: Array, depth: float) -> Array:
+    """Return the direction in which a single point lies at its depth from a wall; NaN where no usual one fits."""
+    from_centre = float(np.hypot(*place))
+    ways = [np.array(way) for way in ((0.0, -1.0), (1.0, 0.0), (0.0, 1.0), (-1.0, 0.0))]
+    if section.shape == "round" and from_centre > _STRAIGHT:
+        ways = [-place / from_centre, place / from_centre, *ways]
+    for way in ways:
+        port = place - way * depth
+        if abs(float(sections.wall_distance(section.shape, section.size, *port))) < _STRAIGHT:
+            return way
+    return np.array([np.nan, np.nan])
 
 
-def site(setup: Setup) -> tuple[float | None, float | None]:
-    """Return the straight lengths before and after the plane in hydraulic diameters, None where not stated."""
-    diameter = setup.plane.section.hydraulic_diameter
-    before, after = setup.plane.upstream, setup.plane.downstream
-    return (before.value / diameter if before else None, after.value / diameter if after else None)
+def room_ahead(section: Section, place: Array, way: Array) -> float:
+    """Return how far it is from a point along a direction to the wall. [m]  NaN without a direction.
 
-
-def method_title(setup: Setup) -> str:
-    """Return the title of the method that the plan is for."""
-    return methods.get(setup.method).title
+    The distance to the nearest wall is always free, so that steps of it approach the wall and never pass it.
+    """
+    if not np.all(np.isfinite(way)):
+        return float("nan")
+    gone = 0.0
+    for _ in range(200):
+        free = float(sections.wall_distance(section.shape, section.size, *(place + way * gone)))
+        if free < 1e-9:
+            break
+        gone += free
+    return gone

@@ -9,14 +9,14 @@ import numpy.typing as npt
 from matplotlib.axes import Axes
 from matplotlib.backends.backend_agg import FigureCanvasAgg
 from matplotlib.figure import Figure
-from matplotlib.patches import Circle, Patch, Rectangle
+from matplotlib.patches import Patch, PathPatch
+from matplotlib.path import Path as Curve
 from matplotlib.ticker import MaxNLocator
 
 from traverse import files
 from traverse.errors import OutputError
 from traverse.model import Layout, Section
 from traverse.physics import sections
-from traverse.planning import Plan
 from traverse.report.numbers import significant, unit_text, with_uncertainty
 from traverse.result import Reduction, RunResult
 from traverse.units import UNITS
@@ -65,13 +65,10 @@ def _plain(axes: Axes) -> None:
 
 
 def outline(plane_section: Section, scale: float) -> Patch:
-    """Return the inner wall of a section as a patch, in the unit given by its scale."""
-    width, height = plane_section.width * scale, plane_section.height * scale
-    if plane_section.shape == "round":
-        return Circle((0.0, 0.0), width / 2.0, fill=False, edgecolor=INK, linewidth=2.0, zorder=4)
-    return Rectangle(
-        (-width / 2.0, -height / 2.0), width, height, fill=False, edgecolor=INK, linewidth=2.0, zorder=4
-    )
+    """Return the inner wall of a section as a patch, in the unit given by its scale; a core is part of it."""
+    rings = sections.outline(plane_section.shape, plane_section.size, 361)
+    curve = Curve.make_compound_path(*(Curve(ring * scale, closed=True) for ring in rings))
+    return PathPatch(curve, fill=False, edgecolor=INK, linewidth=2.0, zorder=4)
 
 
 def field(result: RunResult, layout: Layout, plane_section: Section, size: int = 181) -> tuple[Array, Array, Array]:
@@ -80,9 +77,9 @@ def field(result: RunResult, layout: Layout, plane_section: Section, size: int =
     The velocity divided by the seventh root of the wall distance is interpolated between the points (thin plate,
     held level far from them) and multiplied back, so that it falls to zero at the wall as turbulent flow does.
     """
-    width, height = plane_section.width, plane_section.height
-    x, y = np.meshgrid(np.linspace(-width / 2, width / 2, size), np.linspace(-height / 2, height / 2, size))
-    dims = {name: stated.value for name, stated in plane_section.dimensions.items()}
+    left, right, bottom, top = plane_section.bounds
+    x, y = np.meshgrid(np.linspace(left, right, size), np.linspace(bottom, top, size))
+    dims = plane_section.size
     wall = np.clip(sections.wall_distance(plane_section.shape, dims, x, y), 0.0, None)
     counted = result.treated.counted
     near = np.clip(sections.wall_distance(plane_section.shape, dims, layout.x[counted], layout.y[counted]), 1e-9, None)
@@ -206,32 +203,3 @@ def budget(result: Reduction) -> Figure | None:
     axes.set_title(f"Actual flow {stated}, run {result.runs[0].run.name}\nfilled: shared by all points; hatched: point by point. "
                    f"Layout term {result.layout_term.split(':')[0]}", fontsize=9, loc="left")
     return figure
-
-
-def plan(planned: Plan) -> Figure:
-    """Draw the section at true scale with the points, their labels and the marks on the probe."""
-    setup, layout = planned.setup, planned.layout
-    unit = "in" if setup.units == "us" else "mm"
-    scale = 1.0 / UNITS[unit].factor
-    tall = setup.plane.section.height / setup.plane.section.width
-    figure = _figure(7.0, max(4.0, min(6.0 * tall + 1.0, 9.0)))
-    axes = figure.subplots()
-    axes.add_patch(outline(setup.plane.section, scale))
-    for k, name in enumerate(layout.lines):
-        index = np.flatnonzero([line == name for line in layout.line])
-        axes.plot(layout.x[index] * scale, layout.y[index] * scale, linestyle=DASHES[k % len(DASHES)], linewidth=0.8,
-                  marker=MARKERS[k % len(MARKERS)], markersize=5, color=COLOURS[k % len(COLOURS)], label=f"line {name}")
-        for i in index:
-            axes.annotate(f"{layout.line[i]}{layout.point[i]}\n{planned.mark[i] * scale:.{2 if unit == 'in' else 0}f}",
-                          (layout.x[i] * scale, layout.y[i] * scale), xytext=(4, 4), textcoords="offset points", fontsize=6.5)
-    axes.set_aspect("equal")
-    axes.autoscale_view()
-    axes.margins(0.06)
-    axes.set_xlabel(f"x [{unit}]")
-    axes.set_ylabel(f"y [{unit}], looking downstream")
-    axes.legend(fontsize=8, frameon=False, loc="upper left", bbox_to_anchor=(1.0, 1.0))
-    axes.set_title(f"{setup.title}\npoints with their marks on the probe [{unit}], port depth included", fontsize=10)
-    _plain(axes)
-    return figure
-
-

@@ -1,4 +1,4 @@
-"""What the terminal shows: the result in a minute, the plan as a table."""
+"""What the terminal shows: the result in a minute, the findings; the plan has a page of its own (plan_text)."""
 
 from __future__ import annotations
 
@@ -7,12 +7,9 @@ from collections.abc import Iterable, Sequence
 
 from traverse import methods
 from traverse.model import Finding
-from traverse.planning import Plan, method_title, site
 from traverse.quantities import BY_NAME
-from traverse.report import cautions
-from traverse.report.numbers import OTHER, plain, significant, with_uncertainty
+from traverse.report.numbers import OTHER, plain, with_uncertainty
 from traverse.result import Reduction
-from traverse.units import UNITS, Stated
 
 FRONT = ("mean_velocity", "actual_flow", "standard_flow", "dry_standard_flow", "mass_flow")
 STATE = (
@@ -114,71 +111,3 @@ def findings(items: Sequence[Finding], *, everything: bool) -> str:
         setting = f" (decided otherwise by {item.setting})" if item.setting else ""
         lines.append(f"{item.level}: {item.topic}{where}: {item.message}{setting if everything else ''}")
     return "\n".join(lines)
-
-
-def length(value: float, system: str) -> str:
-    """Return a length as a crew would read it off a rule: millimetres, or inches to three decimals."""
-    return f"{UNITS['in'].from_si(value):.3f}" if system == "us" else f"{value * 1000:.1f}"
-
-
-def sixteenths(value: float) -> str:
-    """Return a length in inches to the nearest sixteenth, such as '5 3/16'."""
-    steps = round(UNITS["in"].from_si(value) * 16)
-    whole, rest = divmod(steps, 16)
-    if not rest:
-        return str(whole)
-    bottom = 16
-    while rest % 2 == 0:
-        rest, bottom = rest // 2, bottom // 2
-    return f"{whole} {rest}/{bottom}" if whole else f"{rest}/{bottom}"
-
-
-def plan(planned: Plan) -> str:
-    """Return the plan of a traverse as text."""
-    setup, layout, system = planned.setup, planned.layout, planned.setup.units
-    unit = "in" if system == "us" else "mm"
-    section = setup.plane.section
-    size = " x ".join(stated.text for stated in section.dimensions.values())
-    before, after = site(setup)
-    lines = [
-        setup.title, f"{method_title(setup)}", "",
-        f"Section      {section.shape}, {size}; area {plain('area', section.area, system)}, "
-        f"hydraulic diameter {length(section.hydraulic_diameter, system)} {unit}",
-        f"Layout       {layout.title}: {len(layout.lines)} line{'s' if len(layout.lines) > 1 else ''}, "
-        f"{layout.size} points ({layout.source})",
-        f"Site         {_diameters(before)} before, {_diameters(after)} after the plane",
-        f"Port depth   {_stated(setup.plane.port_depth)}", "",
-    ]
-    heads = ["line", "point", "weight", f"x [{unit}]", f"y [{unit}]", f"depth [{unit}]", f"mark [{unit}]"]
-    heads += ["mark, nearest 1/16 in"] if system == "us" else ["mark, nearest mm"]
-    rows = [heads]
-    for i in range(layout.size):
-        rounded = sixteenths(planned.rounded[i]) if system == "us" else f"{planned.rounded[i] * 1000:.0f}"
-        rows.append([
-            layout.line[i], str(layout.point[i]) + ("*" if layout.moved[i] else ""), f"{layout.weight[i]:.5f}",
-            *(length(float(v[i]), system) for v in (layout.x, layout.y, layout.depth, planned.mark)), rounded,
-        ])
-    lines.append(table(rows, right=range(2, 8)))
-    if any(layout.moved):
-        lines.append("* moved to the least distance from the wall")
-    lines += ["", "x to the right, y up from the centre, looking downstream; depth from the inner wall; mark = depth + port depth."]
-    if planned.mean_velocity is not None:
-        expected = "" if planned.expected is None else f", about {_pressure(planned.expected, system)} on the gauge"
-        lines.append(f"At design flow the mean velocity is {plain('mean_velocity', planned.mean_velocity, system)}{expected}.")
-    notes = findings(planned.findings, everything=False)
-    lines += ["", notes] if notes else []
-    lines += ["", "Cautions", *(f"- {text}" for text in cautions.TEXTS), cautions.DEFER]
-    return "\n".join(lines)
-
-
-def _pressure(value: float, system: str) -> str:
-    unit = "inH2O" if system == "us" else "Pa"
-    return f"{significant(UNITS[unit].from_si(value), 3)} {unit}"
-
-
-def _diameters(value: float | None) -> str:
-    return "not stated" if value is None else f"{value:.2f} diameters"
-
-
-def _stated(value: Stated | None) -> str:
-    return "not stated" if value is None else value.text

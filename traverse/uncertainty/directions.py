@@ -24,8 +24,7 @@ _UNIT = {
     "coefficient": "1", "differential_pressure": "Pa", "temperature": "K", "static": "Pa", "barometric": "Pa",
     "moisture": "1", "relative_humidity": "1", "wet_bulb": "K", "dew_point": "K", "humidity_ratio": "kg/kg",
     "oxygen": "1", "carbon_dioxide": "1", "carbon_monoxide": "1", "sulfur_dioxide": "1", "density": "kg/m3",
-    "molar_mass": "g/mol", "diameter": "m", "circumference": "m", "width": "m", "height": "m", "wall_thickness": "m",
-    "position": "m", "yaw": "rad", "layout": "1",
+    "molar_mass": "g/mol", "position": "m", "yaw": "rad", "layout": "1",
 }
 
 
@@ -76,7 +75,8 @@ def _row(component: Component, name: str, job: Job, inputs: Mapping[str, Array],
     if not component.shared:
         size = np.broadcast_to(size, (job.layout.size,))
     return Row(
-        input=name, kind=component.kind, shared=component.shared, standard_uncertainty=shown, unit=_UNIT[name],
+        input=name, kind=component.kind, shared=component.shared, standard_uncertainty=shown,
+        unit="m" if name in job.plane.section.dimensions else _UNIT[name],
         degrees_of_freedom=component.degrees_of_freedom, stated=component.text, second_order=name == "yaw",
         directions=tuple(_directions(target, size, component.shared, counted)),
     )

@@ -8,12 +8,14 @@ import numpy.typing as npt
 from traverse.physics.sections import annulus, ellipse, flat_oval, polygon, rectangle
 from traverse.physics.sections import round as circle
 from traverse.physics.sections._base import DEDUCTIONS, Array, Shape, Size
+from traverse.physics.sections.annulus import diameters as ring_diameters
 from traverse.physics.sections.polygon import corners, crossing
 from traverse.physics.sections.round import diameter
 
 __all__ = [
     "DEDUCTIONS", "SHAPES", "Array", "Shape", "Size", "area", "bounds", "chord", "contains", "corners", "crossing", "diameter",
-    "equal_area_diameter", "extent", "hydraulic_diameter", "outline", "perimeter", "wall_distance",
+    "equal_area_diameter", "extent", "hydraulic_diameter", "outline", "perimeter", "ring_diameters",
+    "wall_distance",
 ]
 
 SHAPES: dict[str, Shape] = {

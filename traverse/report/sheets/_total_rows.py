@@ -6,8 +6,9 @@ import math
 
 import numpy as np
 
-from traverse.physics import gas, sections
+from traverse.physics import gas
 from traverse.quantities import BY_NAME
+from traverse.report.sheets import _section_rows
 from traverse.report.sheets._ledger import Ledger
 from traverse.report.sheets._run_view import RunView
 from traverse.report.sheets._view import View
@@ -23,12 +24,16 @@ def total_rows(ledger: Ledger, view: View, run: RunView) -> None:
         return f"«{prefix}.{name}.0:{prefix}.{name}.{last}»"
 
     value = run.result.value
-    ledger.live("A", "Area", _area(view), value("area"), "m2")
+    _section_rows.area(ledger, view.result.job.plane.section)
     ledger.live("mr", "Mean root of differential pressure", f"SUMPRODUCT({column('w')},{column('root')})",
                 value("mean_root_differential_pressure"), "Pa^0.5", "area-weighted mean of the roots")
     if run.setting.arithmetic == "root-mean":
         _root_mean(ledger, run)
     factor = "*{wall_factor}" if view.result.job.corrections.wall_factor is not None else ""
+    if view.layout.wall_exponent is not None:
+        ledger.number("profile_factor", "Integration factor", run.result.treated.profile_factor, "1",
+                      "what the cubic arcs and the wall law carry of a uniform velocity")
+        factor += "*{profile_factor}"
     ledger.live("V", "Mean velocity", f"SUM({column('wv')}){factor}", value("mean_velocity"), "m/s", "sum of weight x velocity",
                 style="result")
     ledger.live("Q", "Actual flow (wet)", "{A}*{V}", value("actual_flow"), "m3/s", "area x mean velocity", style="result")
@@ -43,16 +48,6 @@ def total_rows(ledger: Ledger, view: View, run: RunView) -> None:
         ledger.number("rhom", "Density", value("density"), "kg/m3", "no flow: area-weighted mean")
     _standard(ledger, run, column("wvs") if run.setting.reference else "", factor)
     _reynolds(ledger, view, run)
-
-
-def _area(view: View) -> str:
-    section = view.result.job.plane.section
-    if section.shape == "rectangle":
-        return "{width}*{height}"
-    if "diameter" in section.dimensions:
-        return "PI()/4*{diameter}^2"
-    wall = "-2*{wall_thickness}" if "wall_thickness" in section.dimensions else ""
-    return f"PI()/4*({{circumference}}/PI(){wall})^2"
 
 
 def _root_mean(ledger: Ledger, run: RunView) -> None:
@@ -105,14 +100,8 @@ def _standard(ledger: Ledger, run: RunView, column: str, factor: str) -> None:
 
 def _reynolds(ledger: Ledger, view: View, run: RunView) -> None:
     """Put hydraulic diameter, viscosity and Reynolds number."""
-    section, temperature = view.result.job.plane.section, run.mean["temperature"]
-    size = {name: stated.value for name, stated in section.dimensions.items()}
-    if section.shape == "rectangle":
-        ledger.live("D", "Hydraulic diameter", "2*{width}*{height}/({width}+{height})",
-                    float(sections.hydraulic_diameter("rectangle", size)), "m", "four times the area over the perimeter")
-    else:
-        ledger.live("D", "Hydraulic diameter", "2*SQRT({A}/PI())", section.hydraulic_diameter, "m",
-                    "four times the area over the perimeter")
+    temperature = run.mean["temperature"]
+    _section_rows.hydraulic_diameter(ledger, view.result.job.plane.section)
     if run.setting.gas_kind != "flue-gas":
         formula = f"{gas.AIR_BETA!r}*{{Tm}}^1.5/({{Tm}}+{gas.AIR_SUTHERLAND!r})"
         ledger.live("mu", "Viscosity of air", formula, float(gas.air_viscosity(temperature)), "Pa s",

@@ -43,7 +43,6 @@ def _across(view: View) -> int:
 def _facts(sheet: SheetSpec, view: View, row: int) -> int:
     job = view.result.job
     plane = job.plane
-    size = ", ".join(f"{name.replace('_', ' ')} {stated.text}" for name, stated in plane.section.dimensions.items())
     lengths = ", ".join(
         f"{stated.text} {word}" for stated, word in ((plane.upstream, "before"), (plane.downstream, "after")) if stated
     )
@@ -51,7 +50,7 @@ def _facts(sheet: SheetSpec, view: View, row: int) -> int:
     facts = [
         ("Date", job.date.isoformat() if job.date else "not stated"),
         ("Method", f"{view.method.title}"),
-        ("Section", f"{plane.section.shape}, {size}"),
+        ("Section", plane.section.words),
         ("Straight lengths", lengths or "not stated"),
         ("Points", f"{view.layout.size} on {len(view.layout.lines)} lines, {view.layout.title.lower()}; {len(view.runs)} run(s)"),
         ("Probe", f"{pitot.type}, coefficient {pitot.coefficient:g} ({pitot.coefficient_source})"),

@@ -6,6 +6,7 @@ import math
 
 import numpy as np
 
+from traverse.physics import sections
 from traverse.report.sheets._view import View, heads
 from traverse.report.spec import Live, ScatterChart, Series, SheetSpec, Text
 from traverse.units import UNITS
@@ -20,10 +21,10 @@ def sheets(view: View) -> list[SheetSpec]:
     sheet = SheetSpec(TITLE)
     layout, job, unit = view.layout, view.result.job, view.length_unit
     sheet.put(1, 1, Text("Layout of the measuring points"), style="title")
-    size = ", ".join(f"{name.replace('_', ' ')} {stated.text}" for name, stated in job.plane.section.dimensions.items())
+    origin = "" if job.plane.section.shape == "polygon" else " from the centre"
     facts = (
         ("Rule", f"{layout.title}; positions {layout.digits}"), ("Source", layout.source),
-        ("Section", f"{job.plane.section.shape}, {size}, looking downstream; x to the right, y up from the centre"),
+        ("Section", f"{job.plane.section.words}, looking downstream; x to the right, y up{origin}"),
         ("Depth", "from the inner wall at the port; mark on probe = depth + port depth"),
     )
     for row, (label, text) in enumerate(facts, start=2):
@@ -65,28 +66,31 @@ def _point(sheet: SheetSpec, view: View, i: int) -> None:
 def _outline(sheet: SheetSpec, view: View, row: int) -> None:
     """Draw the section with its points at true scale, and put the outline it is drawn from beside it."""
     section, layout = view.result.job.plane.section, view.layout
-    if section.shape == "round":
-        angle = np.linspace(0.0, 2.0 * np.pi, 37)
-        x, y = section.width / 2 * np.cos(angle), section.height / 2 * np.sin(angle)
-    else:
-        x = np.array([-1, 1, 1, -1, -1]) * section.width / 2
-        y = np.array([-1, -1, 1, 1, -1]) * section.height / 2
+    rings = sections.outline(section.shape, section.size, 37)
     names = (f"outline x [{view.length_unit}]", f"y [{view.length_unit}]")
     heads(sheet, row, names, column=8, right=names)
-    for i, (a, b) in enumerate(zip(x, y, strict=True)):
-        sheet.put(row + 1 + i, 8, view.length(float(a)), style="faint", format=view.length_format(), key=f"lay.ox.{i}")
-        sheet.put(row + 1 + i, 9, view.length(float(b)), style="faint", format=view.length_format(), key=f"lay.oy.{i}")
-    series = [Series("inner wall", f"lay.ox.0:lay.ox.{len(x) - 1}", f"lay.oy.0:lay.oy.{len(x) - 1}", "outline")]
+    at, series = row + 1, []
+    for number, ring in enumerate(rings):
+        for i, (a, b) in enumerate(ring.tolist()):
+            sheet.put(at, 8, view.length(a), style="faint", format=view.length_format(), key=f"lay.ox{number}.{i}")
+            sheet.put(at, 9, view.length(b), style="faint", format=view.length_format(), key=f"lay.oy{number}.{i}")
+            at += 1
+        last = len(ring) - 1
+        xs, ys = (f"lay.{axis}{number}.0:lay.{axis}{number}.{last}" for axis in ("ox", "oy"))
+        series.append(Series("core" if number else "inner wall", xs, ys, "outline"))
     for name in layout.lines:
         index = [i for i, line in enumerate(layout.line) if line == name]
         if index == list(range(index[0], index[-1] + 1)):
             series.append(Series(
                 f"line {name}", f"lay.x.{index[0]}:lay.x.{index[-1]}", f"lay.y.{index[0]}:lay.y.{index[-1]}", "points"
             ))
-    half = _round_up(UNITS[view.length_unit].from_si(max(section.width, section.height)) * 0.51)
+    left, right, bottom, top = (UNITS[view.length_unit].from_si(side) for side in section.bounds)
+    half = _round_up(max(right - left, top - bottom) * 0.51)
+    x, y = ((left + right) / 2, (bottom + top) / 2) if section.shape == "polygon" else (0.0, 0.0)
     sheet.chart(ScatterChart(
         title="Section, looking downstream", x_title=f"x [{view.length_unit}]", y_title=f"y [{view.length_unit}]",
-        series=tuple(series), anchor=f"A{row}", width_cm=13, height_cm=13, square=True, x_min=-half, x_max=half, y_min=-half, y_max=half,
+        series=tuple(series), anchor=f"A{row}", width_cm=13, height_cm=13, square=True, x_min=x - half, x_max=x + half, y_min=y - half,
+        y_max=y + half,
     ))
 
 

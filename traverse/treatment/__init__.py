@@ -7,13 +7,19 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 
+from traverse import layouts
 from traverse.chain import Setting
 from traverse.errors import DomainError, ReadingError
 from traverse.methods import Method
-from traverse.model import COMPONENTS, UNREAD, Array, Corrections, Job, Layout, Policies, Readings, Reference, Run, frozen
+from traverse.model import COMPONENTS, UNREAD, Array, Corrections, Job, Layout, Policies, Readings, Reference, Run, Section, frozen
 from traverse.physics.water import saturation_pressure
+from traverse.treatment._unread import RULES as MISSING_RULES
+from traverse.treatment._unread import fill
 
 Flags = npt.NDArray[np.bool_]
+__all__ = [
+    "MISSING_RULES", "Flags", "Treated", "inputs", "point_factor", "refuse_impossible", "setting", "treat",
+]
 # Blockage of the section by a cylindrical stem: relative velocity correction per share of the area that the stem
 # fills. ISO 3966 clause 12 (corrections), value from memory.
 STEM_BLOCKAGE = 0.7
@@ -24,24 +30,32 @@ class Treated:
     """Readings after the stated rules. Arrays have shape (points,).
 
     ``differential_pressure`` [Pa] is finite everywhere (0 where a point does not count); ``weight`` is the weight used
-    and sums to 1; ``rule`` says per point what acted, empty where the reading was taken as it stands.
+    and sums to 1; ``rule`` says per point what acted, empty where the reading was taken as it stands. ``profile_factor`` is
+    what the integration over the section makes of a uniform velocity: 1 where velocities are averaged, less where they
+    fall to zero at the wall; ``wall_exponent`` is the exponent of that fall.
     """
 
     differential_pressure: Array
     weight: Array
     counted: Flags
     rule: tuple[str, ...]
+    profile_factor: float = 1.0
+    wall_exponent: float | None = None
 
 
-def treat(readings: Readings, layout: Layout, policies: Policies, negative: str | None = None) -> Treated:
+def treat(
+    readings: Readings, layout: Layout, section: Section, policies: Policies, *, negative: str | None = None,
+    missing: str | None = None,
+) -> Treated:
     """Apply the rules for unread, below-range and negative readings.
 
     Parameters
     ----------
-    readings, layout, policies
-        The run's readings, the points they belong to, and the job's rules.
-    negative : str, optional
-        Overrides the job's rule for negative readings (``zero``, ``signed``, ``omit``).
+    readings, layout, section, policies
+        The run's readings, the points they belong to, the section they lie in, and the job's rules.
+    negative, missing : str, optional
+        Override the job's rule for negative readings (``zero``, ``signed``, ``omit``) and for points that were not read
+        (``neighbour``, ``field``, ``omit``).
 
     Raises
     ------
@@ -58,60 +72,40 @@ def treat(readings: Readings, layout: Layout, policies: Policies, negative: str 
         rule[index] = {"half": "half the limit", "zero": "zero", "limit": "the limit"}[policies.below]
     unread = np.isin(status, list(UNREAD)) | ~np.isfinite(pressure)
     if unread.any():
-        _unread(readings, layout, policies, unread, pressure, counted, rule)
+        fill(missing or policies.missing, readings, layout, section, unread, pressure, counted, rule)
     choice = negative or ("zero" if policies.negative == "method" else policies.negative)
     below_zero = counted & (pressure < 0)
     for index in np.flatnonzero(below_zero):
         rule[index] = {"zero": "counted as zero", "signed": "root with its sign", "omit": "left out"}[choice]
     if choice == "omit":
         counted &= ~below_zero
-    weight = np.where(counted, layout.weight, 0.0)
-    if not weight.sum() > 0:
+    if not np.any(layout.weight[counted] > 0):
         raise ReadingError("no point is left to average", where="readings", expected="at least one usable reading")
     pressure = np.where(counted, pressure, 0.0)
+    weight, factor, exponent = _weights(layout, section, pressure, counted)
     return Treated(
-        differential_pressure=frozen(pressure), weight=frozen(weight / weight.sum()), counted=counted, rule=tuple(rule)
+        differential_pressure=frozen(pressure), weight=frozen(weight), counted=counted, rule=tuple(rule), profile_factor=factor,
+        wall_exponent=exponent,
     )
 
 
-def _unread(
-    readings: Readings, layout: Layout, policies: Policies, unread: Flags, pressure: Array, counted: Flags, rule: list[str]
-) -> None:
-    """Fill or drop the points that gave no usable number, in place."""
-    labels = [f"{readings.line[i]}{readings.point[i]} ({readings.status[i]})" for i in np.flatnonzero(unread)]
-    if policies.missing == "error":
-        raise ReadingError(
-            f"no usable reading at {', '.join(labels)}", where="readings", expected="a reading at every point of the plan",
-            how='or say what to do: [readings] missing = "neighbour" or "omit"',
-        )
-    if policies.missing == "omit":
-        counted[unread] = False
-        for index in np.flatnonzero(unread):
-            rule[index] = "left out, weights of the others raised"
-        return
-    root = np.sign(pressure) * np.sqrt(np.abs(pressure))
-    for place in np.flatnonzero(unread).tolist():
-        pressure[place], names = _neighbours(place, readings, layout, unread, root)
-        rule[place] = f"from {names}"
-
-
-def _neighbours(
-    index: int, readings: Readings, layout: Layout, unread: Flags, root: Array
-) -> tuple[float, str]:
-    """Return the pressure whose root is the mean of the roots read next to a point on its line."""
-    same = np.array([line == layout.line[index] for line in layout.line]) & ~unread
-    before = np.flatnonzero(same & (layout.depth < layout.depth[index]))
-    after = np.flatnonzero(same & (layout.depth > layout.depth[index]))
-    chosen = [int(before[np.argmax(layout.depth[before])])] if before.size else []
-    chosen += [int(after[np.argmin(layout.depth[after])])] if after.size else []
-    if not chosen:
-        raise ReadingError(
-            f"no usable reading on line {readings.line[index]}", where="readings",
-            expected="a neighbour on the same line to take the missing point from", how='or set [readings] missing = "omit"',
-        )
-    mean = float(np.mean(root[chosen]))
-    names = " and ".join(f"{readings.line[i]}{readings.point[i]}" for i in chosen)
-    return mean * abs(mean), names
+def _weights(layout: Layout, section: Section, pressure: Array, counted: Flags) -> tuple[Array, float, float | None]:
+    """Return the weights of the points that count, their sum before it was made 1, and the exponent of the wall law."""
+    if layout.wall_exponent is None:
+        weight = np.where(counted, layout.weight, 0.0)
+        return weight / weight.sum(), 1.0, None
+    index = np.flatnonzero(counted)
+    places = ([layout.line[i] for i in index.tolist()], layout.x[index], layout.y[index])
+    layouts.integrable(section.shape, section.size, *places)
+    exponent = layout.wall_exponent
+    if exponent == "fit":
+        # The exponent is of velocities; on one line they go with the roots.
+        root = np.sqrt(np.maximum(pressure[index], 0.0))
+        exponent, _ = layouts.fitted_exponent(section.shape, section.size, *places, root)
+    own = layouts.velocity_area(section.shape, section.size, *places, exponent)
+    weight = np.zeros(layout.size)
+    weight[index] = own
+    return weight / own.sum(), float(own.sum()), float(exponent)
 
 
 def setting(job: Job, run: Run, method: Method, *, signed: bool = False) -> Setting:
@@ -162,7 +156,7 @@ def inputs(job: Job, run: Run, method: Method, treated: Treated) -> dict[str, Ar
         "molar_mass": one(gas.molar_mass.value if gas.molar_mass else None),
         "point_factor": point_factor(job.corrections, run, job.layout, job.plane.section.area),
         "wall_factor": one(job.corrections.wall_factor if job.corrections.wall_factor is not None else 1.0),
-        "profile_factor": one(1.0),
+        "profile_factor": one(treated.profile_factor),
     }
     values |= {name: one(gas.fraction(name)) for name in COMPONENTS}
     values |= {name: one(stated.value) for name, stated in job.plane.section.dimensions.items()}
