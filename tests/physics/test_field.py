@@ -49,7 +49,7 @@ def oval_second_moment(width, height):
 @pytest.mark.parametrize(("shape", "size", "expected", "precision"), [
     ("round", ROUND, 0.4**2 / 4, 1e-8), ("ellipse", {"width": 1.2, "height": 0.5}, 0.25**2 / 4, 1e-8), ("rectangle", WIDE, 1 / 12, 1e-8),
     ("annulus", {"diameter": 1.0, "core": 0.4}, (0.5**2 + 0.2**2) / 4, 1e-8),
-    ("flat-oval", {"width": 1.2, "height": 0.4}, oval_second_moment(1.2, 0.4), 2e-4),
+    ("flat-oval", {"width": 1.2, "height": 0.4}, oval_second_moment(1.2, 0.4), 1e-3),
 ])
 def test_second_moments_of_the_nodes(shape, size, expected, precision):
     _, y, weight = quadrature.nodes(shape, size)
@@ -57,11 +57,20 @@ def test_second_moments_of_the_nodes(shape, size, expected, precision):
     assert np.sum(weight * y**2) == pytest.approx(expected, rel=precision)
 
 
+def test_a_grid_is_fine_enough_at_the_wall():
+    """A square as a polygon: the distance to the nearest wall, d, has (1/2)^e 2/((e + 1)(e + 2)) as the mean of d^e."""
+    square = {"x1": 0.0, "y1": 0.0, "x2": 1.0, "y2": 0.0, "x3": 1.0, "y3": 1.0, "x4": 0.0, "y4": 1.0}
+    x, y, weight = quadrature.nodes("polygon", square)
+    distance = np.maximum(sections.wall_distance("polygon", square, x, y), 0.0)
+    for e in (1 / 4, 1 / 7, 1 / 14):
+        assert weight @ distance**e == pytest.approx(0.5**e * 2 / ((e + 1) * (e + 2)), rel=5e-4)
+
+
 def test_a_polygon_is_integrated_about_its_own_middle():
     shape, size = SHAPES[-1]
     x, y, weight = quadrature.nodes(shape, size)
     assert (np.sum(weight * x), np.sum(weight * y)) == pytest.approx((0.8, 0.5), rel=1e-9)
-    assert np.sum(weight * (y - 0.5) ** 2) == pytest.approx(1 / 12, rel=2e-4)
+    assert np.sum(weight * (y - 0.5) ** 2) == pytest.approx(1 / 12, rel=1e-3)
 
 
 # --- what the fit recovers
@@ -255,7 +264,7 @@ def test_means_and_covariances_are_those_of_the_textbook(few_models):
     models = [textbook(at, read, (0, 7.0), 0.6, amplitude * scale, 0.02 * scale, nodes) for amplitude in (0.25, 0.3)]
     share = np.exp([model[2] for model in models] - max(model[2] for model in models))
     share /= share.sum()
-    assert 0.001 < share.min(), "both models must count, or the mixture is not tested"
+    assert share.min() > 0.001, "both models must count, or the mixture is not tested"
     mean = sum(p * model[0] for p, model in zip(share, models, strict=True))
     covariance = sum(p * (model[1] + np.outer(model[0] - mean, model[0] - mean)) for p, model in zip(share, models, strict=True))
     fitted = field.fit("round", ROUND, at.x, at.y, read)

@@ -12,9 +12,9 @@ Array = npt.NDArray[np.float64]
 
 # Wall distance = t^GRADE: any y^(1/m) or ln y becomes smooth enough in t for a few Gauss nodes.
 GRADE = 4
-RADIAL, ANGULAR, SIDE, CELLS = 20, 48, 20, 80
-# In a cell cut by the wall, the part of its depth at which y^(1/m) has its mean: (m/(m + 1))^m, 0.41 to 0.38 for m from 4 to 14.
-WALL_NODE = 0.4
+RADIAL, ANGULAR, SIDE, CELLS = 20, 48, 20, 100
+# A cell at the wall is represented where a power law of this exponent has its mean over the cell.
+STEEPNESS = 7.0
 
 
 def nodes(shape: str, size: Size) -> tuple[Array, Array, Array]:
@@ -82,11 +82,18 @@ def _grid(shape: str, size: Size) -> tuple[Array, Array, Array]:
     weight = np.clip(0.5 + distance / cell, 0.0, 1.0)
     inside = weight > 0.0
     x, y, weight, distance = x[inside], y[inside], weight[inside], distance[inside]
-    cut = weight < 1.0
-    step_x, step_y = _slope(shape, size, x[cut], y[cut], 0.25 * cell)
-    move = WALL_NODE * weight[cut] * cell - distance[cut]
-    x[cut], y[cut] = x[cut] + move * step_x, y[cut] + move * step_y
+    near = distance < 2.0 * cell
+    step_x, step_y = _slope(shape, size, x[near], y[near], 0.25 * cell)
+    move = _representative(distance[near], cell) - distance[near]
+    x[near], y[near] = x[near] + move * step_x, y[near] + move * step_y
     return x, y, weight / weight.sum()
+
+
+def _representative(distance: Array, cell: float) -> Array:
+    """Return the distance from the wall at which y^(1/7) has its mean over the depth of a cell."""
+    low, high = np.maximum(distance - cell / 2.0, 0.0), distance + cell / 2.0
+    power = 1.0 + 1.0 / STEEPNESS
+    return np.asarray(((high**power - low**power) / (power * (high - low))) ** STEEPNESS)
 
 
 def _slope(shape: str, size: Size, x: Array, y: Array, step: float) -> tuple[Array, Array]:

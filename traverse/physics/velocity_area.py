@@ -31,9 +31,9 @@ def wall_exponent(outer: npt.ArrayLike, next_one: npt.ArrayLike, velocity: npt.A
         falls towards the axis.
     """
     distance = np.asarray(next_one, dtype=np.float64) / np.asarray(outer, dtype=np.float64)
-    ratio = np.asarray(next_velocity, dtype=np.float64) / np.asarray(velocity, dtype=np.float64)
-    good = (distance > 1.0) & (ratio >= 1.0) & (np.asarray(velocity) > 0.0)
     with np.errstate(divide="ignore", invalid="ignore"):
+        ratio = np.asarray(next_velocity, dtype=np.float64) / np.asarray(velocity, dtype=np.float64)
+        good = (distance > 1.0) & (ratio >= 1.0) & (np.asarray(velocity) > 0.0)
         return np.asarray(np.where(good, np.log(distance) / np.log(ratio), np.nan))
 
 

@@ -205,7 +205,7 @@ def _fewer(frame: Frame) -> Iterator[Candidate]:
     pairs = [(frame.lines, count) for count in range(1, frame.each)] + [(count, frame.each) for count in range(1, frame.lines)]
     for lines, points in pairs:
         one = frame.place(frame.layout.rule, lines, points)
-        if one is not None:
+        if one is not None and one.total < frame.layout.size:
             yield replace(one, family="fewer")
 
 

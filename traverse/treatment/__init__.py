@@ -13,12 +13,12 @@ from traverse.errors import DomainError, ReadingError
 from traverse.methods import Method
 from traverse.model import COMPONENTS, UNREAD, Array, Corrections, Job, Layout, Policies, Readings, Reference, Run, Section, frozen
 from traverse.physics.water import saturation_pressure
+from traverse.treatment._unread import FROM_FIELD, fill
 from traverse.treatment._unread import RULES as MISSING_RULES
-from traverse.treatment._unread import fill
 
 Flags = npt.NDArray[np.bool_]
 __all__ = [
-    "MISSING_RULES", "Flags", "Treated", "inputs", "point_factor", "refuse_impossible", "setting", "treat",
+    "FROM_FIELD", "MISSING_RULES", "Flags", "Treated", "inputs", "point_factor", "refuse_impossible", "setting", "treat",
 ]
 # Blockage of the section by a cylindrical stem: relative velocity correction per share of the area that the stem
 # fills. ISO 3966 clause 12 (corrections), value from memory.
@@ -96,7 +96,6 @@ def _weights(layout: Layout, section: Section, pressure: Array, counted: Flags) 
         return weight / weight.sum(), 1.0, None
     index = np.flatnonzero(counted)
     places = ([layout.line[i] for i in index.tolist()], layout.x[index], layout.y[index])
-    layouts.integrable(section.shape, section.size, *places)
     exponent = layout.wall_exponent
     if exponent == "fit":
         # The exponent is of velocities; on one line they go with the roots.

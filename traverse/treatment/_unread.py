@@ -11,6 +11,7 @@ from traverse.physics import field
 
 Flags = npt.NDArray[np.bool_]
 RULES = ("neighbour", "field", "omit")
+FROM_FIELD = "from the fitted velocity field"
 
 
 def fill(
@@ -57,7 +58,7 @@ def _from_field(layout: Layout, section: Section, unread: Flags, pressure: Array
     found = fitted.at(layout.x[unread], layout.y[unread])
     pressure[unread] = found * np.abs(found)
     for index in np.flatnonzero(unread):
-        rule[index] = "from the fitted velocity field"
+        rule[index] = FROM_FIELD
 
 
 def _neighbours(

@@ -11,6 +11,7 @@ from traverse.report.sheets._ledger import Ledger
 from traverse.report.sheets._run_view import RunView
 from traverse.report.sheets._view import View, heads
 from traverse.report.spec import Live, SheetSpec, Text
+from traverse.treatment import FROM_FIELD
 from traverse.units import UNITS
 
 SI_UNIT = {"differential_pressure": "Pa", "velocity": "m/s", "temperature": "K", "static": "Pa", "yaw": "rad"}
@@ -71,8 +72,10 @@ class _Point:
         readings, treated = run.result.run.readings, run.result.treated
         self.sheet.put(row, 1, Text(f"{readings.line[i]}{readings.point[i]}"), style="label")
         self.sheet.put(row, 2, Text(readings.status[i]), style="text" if readings.status[i] == "read" else "attention")
-        self.sheet.put(row, 3, Live(f"=«lay.w.{i}»", float(self.view.layout.weight[i])), style="value", format="0.00000",
-                       key=f"{self.ledger.prefix}.w0.{i}")
+        if treated.wall_exponent is None:
+            self.live(row, 3, "w0", f"«lay.w.{i}»", float(self.view.layout.weight[i]), "0.00000")
+        else:
+            self.number(row, 3, "w0", float(treated.weight[i] * treated.profile_factor), "0.00000")
         self.sheet.put(row, 4, int(treated.counted[i]), style="input", format="0", key=f"{self.ledger.prefix}.n.{i}")
         last = self.view.layout.size - 1
         weights, counts = (f"«{self.ledger.prefix}.{n}.0:{self.ledger.prefix}.{n}.{last}»" for n in ("w0", "n"))
@@ -111,7 +114,10 @@ class _Point:
         else:
             self.sheet.put(row, 6, Text("no reading"), style="faint", key=f"{self.ledger.prefix}.dp.{self.i}")
         used = float(self.run.inputs["differential_pressure"][self.i])
-        self.live(row, 7, "dpu", self._used(rule), used, "0.000")
+        if rule == FROM_FIELD:
+            self.number(row, 7, "dpu", used, "0.000")
+        else:
+            self.live(row, 7, "dpu", self._used(rule), used, "0.000")
         root = "SIGN([dpu])*SQRT(ABS([dpu]))" if self.run.setting.signed else "SQRT(MAX([dpu],0))"
         self.live(row, 8, "root", root, float(self.run.root[self.i]), "0.0000")
 

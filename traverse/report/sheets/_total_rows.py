@@ -31,8 +31,9 @@ def total_rows(ledger: Ledger, view: View, run: RunView) -> None:
         _root_mean(ledger, run)
     factor = "*{wall_factor}" if view.result.job.corrections.wall_factor is not None else ""
     if view.layout.wall_exponent is not None:
-        ledger.number("profile_factor", "Integration factor", run.result.treated.profile_factor, "1",
-                      "what the cubic arcs and the wall law carry of a uniform velocity")
+        exponent = run.result.treated.wall_exponent
+        ledger.live("profile_factor", "Integration factor", f"SUMPRODUCT({column('w0')},{column('n')})", run.result.treated.profile_factor,
+                    "1", f"what cubic arcs and a power law to the wall (exponent {exponent:.2f}) carry of a uniform velocity")
         factor += "*{profile_factor}"
     ledger.live("V", "Mean velocity", f"SUM({column('wv')}){factor}", value("mean_velocity"), "m/s", "sum of weight x velocity",
                 style="result")

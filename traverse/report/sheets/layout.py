@@ -25,16 +25,12 @@ def sheets(view: View) -> list[SheetSpec]:
     facts = (
         ("Rule", f"{layout.title}; positions {layout.digits}"), ("Source", layout.source),
         ("Section", f"{job.plane.section.words}, looking downstream; x to the right, y up{origin}"),
-        ("Depth", "from the inner wall at the port; mark on probe = depth + port depth"),
+        ("Depth", "from the inner wall at the port; mark on probe = depth + port depth, + head offset where one is stated"),
     )
     for row, (label, text) in enumerate(facts, start=2):
         sheet.put(row, 1, Text(label), style="label")
         sheet.put(row, 2, Text(text), style="text", span=8)
-    nipple = job.plane.port_depth
-    sheet.put(6, 1, Text("Port depth"), style="label")
-    sheet.put(6, 2, view.length(nipple.value) if nipple else 0.0, style="input", format=view.length_format(), key="port_depth",
-              note="Length of the port nipple, added to every mark on the probe.")
-    sheet.put(6, 3, Text(unit if nipple else f"{unit} (not stated)"), style="unit")
+    _ports(sheet, view)
     labels = tuple(f"{name} [{unit}]" if name in {"x", "y", "depth", "mark on probe"} else name for name in HEADS)
     heads(sheet, FIRST - 1, labels, right={*labels[2:8]})
     for i in range(layout.size):
@@ -49,16 +45,50 @@ def sheets(view: View) -> list[SheetSpec]:
     return [sheet]
 
 
+def _ports(sheet: SheetSpec, view: View) -> None:
+    """Put the port depth, one for all or one a line, and the head offset."""
+    plane, unit, offset = view.result.job.plane, view.length_unit, _head_offset(view)
+    sheet.put(6, 1, Text("Port depth"), style="label")
+    note = "Length of the port nipple, added to every mark on the probe."
+    if plane.port_depths and plane.port_depth is None:
+        for column, (line, nipple) in enumerate(zip(view.layout.lines, plane.port_depths, strict=True), start=2):
+            sheet.put(6, column, view.length(nipple.value), style="input", format=view.length_format(), key=f"port_depth.{line}", note=note)
+            sheet.put(7, column, Text(f"line {line} [{unit}]"), style="unit")
+    else:
+        value = view.length(plane.port_depth.value) if plane.port_depth else 0.0
+        sheet.put(6, 2, value, style="input", format=view.length_format(), key="port_depth", note=note)
+        sheet.put(6, 3, Text(unit if plane.port_depth else f"{unit} (not stated)"), style="unit")
+    if offset is not None and not plane.port_depths:
+        sheet.put(7, 1, Text("Head offset"), style="label")
+        sheet.put(7, 2, view.length(offset), style="input", format=view.length_format(), key="head_offset")
+        sheet.put(7, 3, Text(unit), style="unit")
+
+
+def _head_offset(view: View) -> float | None:
+    stated = view.result.job.runs[0].pitot.head_offset
+    return None if stated is None else stated.value
+
+
+def _mark(view: View, i: int) -> Live:
+    """Return the mark of a point: depth, port depth and head offset."""
+    plane, layout, offset = view.result.job.plane, view.layout, _head_offset(view) or 0.0
+    differ = bool(plane.port_depths) and plane.port_depth is None
+    nipple = plane.port_depths[layout.lines.index(layout.line[i])] if differ else plane.port_depth
+    value = view.length(float(layout.depth[i])) + (view.length(nipple.value) if nipple else 0.0) + view.length(offset)
+    added = f"«port_depth.{layout.line[i]}»" if differ else "«port_depth»"
+    if not offset:
+        return Live(f"=«lay.depth.{i}»+{added}", value)
+    return Live(f"=«lay.depth.{i}»+{added}+" + (repr(view.length(offset)) if plane.port_depths else "«head_offset»"), value)
+
+
 def _point(sheet: SheetSpec, view: View, i: int) -> None:
     layout, row, fmt = view.layout, FIRST + i, view.length_format()
-    nipple = view.result.job.plane.port_depth
     sheet.put(row, 1, Text(layout.labels()[i]), style="label", key=f"lay.label.{i}")
     sheet.put(row, 2, Text(layout.line[i]), style="text")
     sheet.put(row, 3, layout.point[i], style="value", format="0")
     for column, name in ((4, "x"), (5, "y"), (6, "depth")):
         sheet.put(row, column, view.length(float(getattr(layout, name)[i])), style="value", format=fmt, key=f"lay.{name}.{i}")
-    mark = view.length(float(layout.depth[i])) + (view.length(nipple.value) if nipple else 0.0)
-    sheet.put(row, 7, Live(f"=«lay.depth.{i}»+«port_depth»", mark), style="value", format=fmt)
+    sheet.put(row, 7, _mark(view, i), style="value", format=fmt)
     sheet.put(row, 8, float(layout.weight[i]), style="value", format="0.000000", key=f"lay.w.{i}")
     sheet.put(row, 9, Text("to the wall distance" if layout.moved[i] else ""), style="note")
 
