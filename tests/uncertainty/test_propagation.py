@@ -190,3 +190,13 @@ def test_combination_properties(parts):
     finite = [nu for _, nu in parts if math.isfinite(nu)]
     if finite and len(finite) == len(parts):
         assert min(finite) - 1 <= got.degrees_of_freedom <= sum(finite) + 1e-6
+
+
+def test_a_quantity_that_an_input_does_not_move_has_no_uncertainty_from_it(tmp_path):
+    """The density does not depend on the dimensions: rounding in the last digits of a difference is no uncertainty."""
+    from tests.support import jobs
+
+    change = {"gas": {"kind": "air", "density": None, "relative_humidity": "45 %"}, "uncertainty": {"dimensions": "2 mm", "coefficient": "1 %", "layout": "none"}}
+    quantities = jobs.reduced(tmp_path, change)["runs"][0]["quantities"]
+    assert quantities["density"]["standard_uncertainty"] == 0.0 == quantities["temperature"]["standard_uncertainty"]
+    assert quantities["actual_flow"]["standard_uncertainty"] > 0.0

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from textwrap import fill
 
 import numpy as np
 import numpy.typing as npt
@@ -97,8 +98,9 @@ def _extent(planned: Plan) -> tuple[float, float, float, float]:
 
 def _heads(planned: Plan, axes: Axes, height: float, scale: float) -> None:
     axes.text(MARGIN, height - 0.32, planned.setup.title, fontsize=12, color=INK, va="center")
-    axes.text(MARGIN, height - 0.58, f"{planned.setup.plane.section.words}; looking downstream; scale 1 : {1 / 0.0254 / scale:.3g} "
-              f"where the figure is {WIDTH:g} in ({WIDTH * 25.4:.0f} mm) wide", fontsize=8, color=INK, va="center")
+    facts = f"{planned.setup.plane.section.words}; looking downstream; scale 1 : {1 / 0.0254 / scale:.3g} where the figure is " \
+        f"{WIDTH:g} in ({WIDTH * 25.4:.0f} mm) wide"
+    axes.text(MARGIN, height - 0.5, fill(facts, 90), fontsize=8, color=INK, va="top")
     _axes_cross(axes, WIDTH - 0.75, height - 0.7)
 
 
@@ -148,7 +150,7 @@ def _probe(planned: Plan, page: _Page, lines: Sequence[str], top: float) -> None
     inch_first = planned.setup.units == "us"
     order = "in to 1/16 (mm)" if inch_first else "mm (in to 1/16)"
     page.axes.text(start, body - 0.2, f"probe for {names}: distance from {'the head' if not planned.head_offset else 'where marks count'}, "
-                   f"point: {order}, port depth included", fontsize=7, color=INK, va="center")
+                   f"point: {order}, port depth {'included' if np.any(planned.nipple) else 'not stated'}", fontsize=7, color=INK, va="center")
     length = (float(np.max(planned.mark[index])) + planned.probe.grip) * page.scale
     page.axes.plot([start, start + length], [body, body], color=GREY, linewidth=4.5, solid_capstyle="butt", zorder=1)
     page.axes.plot([start], [body], marker="o", markersize=7, color=INK, zorder=3)

@@ -21,6 +21,8 @@ from traverse.uncertainty.directions import Row
 STEP = 1e-3
 # A reading nearer to zero than this many of its own sigmas is stepped by a whole sigma: the root is not linear there.
 NEAR_ZERO = 2.0
+# What two evaluations of one quantity may differ by without meaning anything, in parts of it.
+ROUNDING = 32.0 * float(np.finfo(np.float64).eps)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -91,7 +93,9 @@ def _step(row: Row, target: str, deviation: Array, inputs: Mapping[str, Array]) 
 
 
 def _deviation(pair: Array, centre: float, steps: Array, row: Row) -> Array:
-    first: Array = (pair[0] - pair[1]) / (2.0 * steps)
+    # A quantity that does not depend on the input still moves by the rounding of its last digits: that is no effect.
+    apart = pair[0] - pair[1]
+    first: Array = np.where(np.abs(apart) <= ROUNDING * abs(centre), 0.0, apart) / (2.0 * steps)
     if not row.second_order:
         return first
     second = (pair[0] - 2.0 * centre + pair[1]) / steps**2
