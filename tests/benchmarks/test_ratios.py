@@ -95,3 +95,8 @@ def test_ten_thousand_traverses_in_one_call():
         times.append((middle - start, time.perf_counter() - middle))
     assert statistics.median(a for a, _ in times) <= 5.0 * statistics.median(b for _, b in times)
     assert statistics.median(a / b for a, b in times) <= 5.0
+
+
+def test_a_plan_costs_no_more_than_its_imports_twice():
+    """A plan at most twice the bare import of numpy and openpyxl."""
+    assert ratio(["-m", "traverse", "plan", "example_data/extract_duct.toml"], ["-c", "import numpy, openpyxl"]) <= 2.0

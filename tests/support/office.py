@@ -114,3 +114,18 @@ def _same(ours: object, theirs: object, tolerance: float) -> bool:
     # An empty text formula reads back as nothing; an error is never right, even when both have it.
     ours, theirs = "" if ours is None else ours, "" if theirs is None else theirs
     return isinstance(ours, str) and ours == theirs and not ours.startswith("#")
+
+
+def convert(path: Path, folder: Path, kind: str) -> Path:
+    """Let the spreadsheet program open a file and save it as another; return the new file."""
+    office = program()
+    folder.mkdir(parents=True, exist_ok=True)
+    with tempfile.TemporaryDirectory() as name:
+        subprocess.run(
+            [office, "--headless", "--norestore", f"-env:UserInstallation=file://{name}/profile", "--convert-to", kind,
+             "--outdir", str(folder), str(path)],
+            check=False, capture_output=True, timeout=120,
+        )
+    made = folder / f"{path.stem}.{kind}"
+    assert made.exists(), f"the spreadsheet program made no {made.name}"
+    return made

@@ -7,7 +7,7 @@ from pathlib import Path
 
 from traverse import files
 from traverse.errors import JobError
-from traverse.importers import job, long_table
+from traverse.importers import _document, field_workbook, job, long_table
 from traverse.importers._document import Document
 from traverse.importers._grid import Told
 from traverse.importers._records import Table
@@ -15,7 +15,7 @@ from traverse.model import Job, Setup
 
 __all__ = ["find_jobs", "load", "load_setup"]
 
-_WORKBOOKS = (".xlsx", ".xlsm", ".xls", ".ods")
+_WORKBOOKS = (".xlsm", ".xls", ".xlsb", ".ods")
 
 
 def load(path: str | Path) -> Job:
@@ -24,19 +24,27 @@ def load(path: str | Path) -> Job:
     Parameters
     ----------
     path : str or Path
-        A TOML job file; the files it names are looked for beside it.
+        A TOML job file, or a filled field workbook; the files it names are looked for beside it.
 
     Raises
     ------
     TraverseError
         With the place, what was found, what would be right, and the setting that says so.
     """
-    return job.load(_job_file(path), _readings, long_table.points)
+    place = _job_file(path)
+    if place.suffix.lower() == field_workbook.SUFFIX:
+        book = field_workbook.read(place, filled=True)
+        return job.load(book.document, lambda _: book.table, long_table.points)
+    return job.load(_document.read(place), _readings, long_table.points)
 
 
 def load_setup(path: str | Path) -> Setup:
     """Return what a job file says before the first reading: section, layout, and what else is known."""
-    return job.load_setup(_job_file(path), _readings, long_table.points)
+    place = _job_file(path)
+    if place.suffix.lower() == field_workbook.SUFFIX:
+        book = field_workbook.read(place, filled=False)
+        return job.load_setup(book.document, lambda _: book.table, long_table.points)
+    return job.load_setup(_document.read(place), _readings, long_table.points)
 
 
 def find_jobs(path: str | Path) -> list[Path]:
@@ -50,26 +58,32 @@ def find_jobs(path: str | Path) -> list[Path]:
     place = Path(path)
     if not place.is_dir():
         return [_job_file(place)]
-    found = [entry for entry in sorted(place.glob("*.toml")) if entry.is_file() and _is_job(entry)]
+    found = [entry for entry in sorted(place.iterdir()) if entry.is_file() and _is_job(entry)]
     if not found:
-        raise JobError("no job file in the folder", where=str(path), expected="at least one .toml file with a [job] table")
+        raise JobError(
+            "no job file in the folder", where=str(path), expected="at least one .toml file with a [job] table, or a field workbook"
+        )
     return found
 
 
 def _is_job(path: Path) -> bool:
+    if path.suffix.lower() == field_workbook.SUFFIX:
+        return not path.name.startswith("~$") and field_workbook.is_one(path)
     # By its text, not its meaning: a job file that is no valid TOML is still one, and its error must be seen.
-    return re.search(r"^\s*\[\s*job\s*\]|^\s*job\.", files.read_text(path)[0], re.M) is not None
+    return path.suffix == ".toml" and re.search(r"^\s*\[\s*job\s*\]|^\s*job\.", files.read_text(path)[0], re.M) is not None
 
 
 def _job_file(path: str | Path) -> Path:
     place = Path(path)
+    if not place.is_file():
+        raise JobError(
+            "a folder" if place.is_dir() else "no such file", where=str(path), expected="a job file (TOML) or a field workbook (.xlsx)"
+        )
     if place.suffix.lower() in _WORKBOOKS:
         raise JobError(
-            "field workbooks are not available in this version", where=place.name,
-            expected="a job file (TOML) with readings as CSV",
+            f"a {place.suffix} file", where=place.name, expected="a job file (TOML) or a field workbook (.xlsx)",
+            how="save the field workbook as .xlsx (Office Open XML)",
         )
-    if not place.is_file():
-        raise JobError("a folder" if place.is_dir() else "no such file", where=str(path), expected="a job file (TOML)")
     return place
 
 

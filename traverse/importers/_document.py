@@ -87,8 +87,14 @@ def _toml(path: Path, text: str) -> dict[str, Any]:
 def read(path: Path) -> Document:
     """Read a job file and check every table, key and kind of value in it."""
     text, note = _text(path)
+    findings = (Finding(level="note", topic="encoding", message=note, where=path.name),) if note else ()
+    return interpreted(path, text, source(path, path.name, text), findings)
+
+
+def interpreted(path: Path, text: str, origin: Source, before: tuple[Finding, ...]) -> Document:
+    """Return the document that the text of a job is, wherever it was read from."""
     content = _toml(path, text)
-    findings = [Finding(level="note", topic="encoding", message=note, where=path.name)] if note else []
+    findings = list(before)
     if not isinstance(content.get("job"), dict):
         raise JobError("no [job] table", where=path.name, expected="a job file begins with [job] title, date, method")
     tables: dict[str, Table] = {}
@@ -107,7 +113,7 @@ def read(path: Path) -> Document:
             message="[submitted] is kept out of the reduction; this version does not compare it.",
         ))
     return Document(
-        path=path, source=source(path, path.name, text), tables=tables, uncertainty=content.get("uncertainty"),
+        path=path, source=origin, tables=tables, uncertainty=content.get("uncertainty"),
         runs=_overrides(content.get("run", [])), findings=tuple(findings),
     )
 
@@ -143,6 +149,15 @@ def _overrides(entries: Any) -> tuple[Override, ...]:
         if names.count(name) > 1:
             raise JobError(f"run {name!r} stands twice", where="[[run]] name", expected="one [[run]] for each run")
     return tuple(found)
+
+
+def override(name: str, values: Mapping[str, Any], shown: str) -> Override:
+    """Return what is said of one run elsewhere than in [[run]]; the keys are those of [[run]]."""
+    home = {key: table for table in reversed(RUN_TABLES) for key in SCHEMA[table]}
+    parts: dict[str, dict[str, Any]] = {}
+    for key, value in values.items():
+        parts.setdefault(home[key], {})[key] = convert(shown, home[key], {key: value}, SCHEMA[home[key]]).values[key]
+    return Override(name=name, tables={part: Table(shown, found) for part, found in parts.items()})
 
 
 def _override(entry: Mapping[str, Any], keys: Mapping[str, Key], home: Mapping[str, str]) -> Override:

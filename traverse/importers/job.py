@@ -9,7 +9,7 @@ from typing import Literal, cast
 
 from traverse import methods
 from traverse.errors import JobError
-from traverse.importers import _document, _gas, _layout, _plane, _runs, _uncertainty
+from traverse.importers import _gas, _layout, _plane, _runs, _uncertainty
 from traverse.importers._document import Document
 from traverse.importers._labels import point_number
 from traverse.importers._matching import Plan
@@ -37,9 +37,8 @@ class Frame:
     findings: tuple[Finding, ...]
 
 
-def load(path: Path, readings: ReadReadings, points: ReadPoints) -> Job:
-    """Return the job of a job file."""
-    document = _document.read(path)
+def load(document: Document, readings: ReadReadings, points: ReadPoints) -> Job:
+    """Return the job of a document."""
     table = readings(document)
     frame = _frame(document, table, readings, points)
     corrections, correction_findings = _plane.corrections(document.table("corrections"), frame.plane)
@@ -50,14 +49,13 @@ def load(path: Path, readings: ReadReadings, points: ReadPoints) -> Job:
         plane=frame.plane, layout=frame.layout, runs=runs, reference=_plane.reference(document.table("reference")),
         uncertainties=_uncertainty.build(document.uncertainty, runs),
         design=_plane.design(document.table("design"), frame.plane.section),
-        corrections=corrections, policies=_policies(document), sources=(*frame.sources, table.source),
+        corrections=corrections, policies=_policies(document), sources=_sources(frame, table),
         findings=tuple(dict.fromkeys((*frame.findings, *table.findings, *correction_findings, *run_findings))),
     )
 
 
-def load_setup(path: Path, readings: ReadReadings, points: ReadPoints) -> Setup:
-    """Return what a job file says before the first reading; gas, conditions and pitot may be absent."""
-    document = _document.read(path)
+def load_setup(document: Document, readings: ReadReadings, points: ReadPoints) -> Setup:
+    """Return what a document says before the first reading; gas, conditions and pitot may be absent."""
     frame = _frame(document, None, readings, points)
     findings = list(frame.findings)
     pitot = gas = conditions = None
@@ -79,6 +77,12 @@ def load_setup(path: Path, readings: ReadReadings, points: ReadPoints) -> Setup:
         design=_plane.design(document.table("design"), frame.plane.section), sources=frame.sources,
         findings=tuple(dict.fromkeys(findings)), gauge=_plane.gauge(document.table("gauge")),
     )
+
+
+def _sources(frame: Frame, table: ReadingTable) -> tuple[Source, ...]:
+    """Return every file once: a field workbook is both the job and its readings."""
+    known = {source.name for source in frame.sources}
+    return frame.sources if table.source.name in known else (*frame.sources, table.source)
 
 
 def _title(document: Document) -> str:

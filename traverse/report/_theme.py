@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from openpyxl.styles import Alignment, Border, Font, NamedStyle, PatternFill, Side
+from openpyxl.styles import Alignment, Border, Font, NamedStyle, PatternFill, Protection, Side
 
 FACE = "Calibri"
 INK, RULE, BAND = "FF1F2A36", "FFB8C2CC", "FFE9EEF3"
@@ -17,6 +17,8 @@ _STYLES: dict[str, tuple[str, str | None, bool, float, bool, str, bool]] = {
     "line": (INK, None, False, 9.5, False, "left", False),
     "value": (INK, None, False, 9.5, False, "right", False),
     "input": ("FF0B3C6F", "FFF7F4E9", False, 9.5, False, "right", False),
+    "entry": (INK, "FFFFF6C9", False, 10.5, False, "right", True),
+    "entry text": (INK, "FFFFF6C9", False, 10.5, True, "left", True),
     "result": (INK, "FFDDE8F3", True, 10, False, "right", False),
     "unit": ("FF5A6672", None, False, 9.5, False, "left", False),
     "note": ("FF5A6672", None, False, 9, False, "left", False),
@@ -34,7 +36,15 @@ _STYLES: dict[str, tuple[str, str | None, bool, float, bool, str, bool]] = {
 
 # Rows of large text, in points: not every program heightens them by itself.
 HEIGHTS = {"title": 24.0, "subtitle": 17.0}
+# What a technician fills in: the only cells of a protected page that can be changed.
+ENTRIES = frozenset({"entry", "entry text"})
 WRAPPED = frozenset(name for name, row in _STYLES.items() if row[4])
+
+
+def difference(name: str) -> tuple[Font, PatternFill]:
+    """Return the font and fill of a style, for a look that comes and goes."""
+    colour, fill, bold, *_ = _STYLES[name]
+    return Font(color=colour, bold=bold), PatternFill(start_color=fill, end_color=fill, fill_type="solid")
 
 
 def styles() -> dict[str, NamedStyle]:
@@ -52,5 +62,9 @@ def styles() -> dict[str, NamedStyle]:
             style.fill = PatternFill("solid", fgColor=fill)
         if ruled:
             style.border = Border(bottom=Side(style="thin", color=RULE))
+        if name in ENTRIES:
+            style.protection = Protection(locked=False)
+            side_line = Side(style="thin", color=RULE)
+            style.border = Border(left=side_line, right=side_line, top=side_line, bottom=side_line)
         found[name] = style
     return found

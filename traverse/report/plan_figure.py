@@ -149,8 +149,10 @@ def _probe(planned: Plan, page: _Page, lines: Sequence[str], top: float) -> None
     names = f"line {lines[0]}" if len(lines) == 1 else f"lines {', '.join(lines)}"
     inch_first = planned.setup.units == "us"
     order = "in to 1/16 (mm)" if inch_first else "mm (in to 1/16)"
-    page.axes.text(start, body - 0.2, f"probe for {names}: distance from {'the head' if not planned.head_offset else 'where marks count'}, "
-                   f"point: {order}, port depth {'included' if np.any(planned.nipple) else 'not stated'}", fontsize=7, color=INK, va="center")
+    origin = "where marks count" if planned.head_offset else "the head"
+    ports = "included" if np.any(planned.nipple) else "not stated"
+    words = f"probe for {names}: distance from {origin}, point: {order}, port depth {ports}"
+    page.axes.text(start, body - 0.2, words, fontsize=7, color=INK, va="center")
     length = (float(np.max(planned.mark[index])) + planned.probe.grip) * page.scale
     page.axes.plot([start, start + length], [body, body], color=GREY, linewidth=4.5, solid_capstyle="butt", zorder=1)
     page.axes.plot([start], [body], marker="o", markersize=7, color=INK, zorder=3)

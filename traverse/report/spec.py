@@ -22,7 +22,7 @@ _CALL = re.compile(r"([A-Za-z_][A-Za-z0-9_.]*)\(")
 # TEXT is not among them (its picture of a number is read in the user's language), nor is anything that changes by itself.
 FUNCTIONS = frozenset((
     "ABS", "ACOS", "AND", "ASIN", "ATAN", "ATAN2", "AVERAGE", "COS", "COSH", "COUNT", "COUNTA", "COUNTIF", "DEGREES", "EXP", "IF",
-    "IFERROR", "INDEX", "INT", "ISNUMBER", "LEN", "LN", "LOG10", "MATCH", "MAX", "MIN", "MOD", "NORMSDIST", "NORMSINV", "NOT",
+    "IFERROR", "INDEX", "INT", "ISNUMBER", "LEFT", "LEN", "LN", "LOG10", "MATCH", "MAX", "MIN", "MOD", "NORMSDIST", "NORMSINV", "NOT",
     "OR", "PI", "POWER", "RADIANS", "ROUND", "ROUNDDOWN", "ROUNDUP", "SIGN", "SIN", "SINH", "SQRT", "STDEV", "SUM", "SUMIF",
     "SUMPRODUCT", "SUMSQ", "TAN", "TANH", "TDIST", "TINV", "VAR",
 ))
@@ -120,6 +120,29 @@ class BarChart:
 Chart = ScatterChart | BarChart
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Validation:
+    """What may be entered into a range of cells (``first:last``): one of a list, or whatever a formula finds true.
+
+    ``formula`` speaks of the first cell of the range, as ``«first»``, which is then taken relatively.
+    """
+
+    cells: str
+    choices: tuple[str, ...] = ()
+    formula: str = ""
+    title: str
+    message: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Highlight:
+    """A look that a range of cells (``first:last``) takes while a formula is true; it speaks of the first cell, as above."""
+
+    cells: str
+    formula: str
+    style: Literal["attention", "pass", "fail"]
+
+
 @dataclass(slots=True)
 class SheetSpec:
     """One page of a workbook.
@@ -132,17 +155,25 @@ class SheetSpec:
         How it prints.
     repeat_rows : (first, last), optional
         Rows repeated on every printed page; the rows below the last are scrolled under them.
+    protected : bool
+        Only entry cells can be changed; no password, so that nobody is locked out of the file.
+    footer : str
+        The text at the foot of every printed page.
     """
 
     title: str
     orientation: Literal["portrait", "landscape"] = "portrait"
     repeat_rows: tuple[int, int] | None = None
+    protected: bool = False
+    footer: str = "values are live formulas; see Record for inputs and digests"
     cells: dict[tuple[int, int], Cell] = field(default_factory=dict)
     keys: dict[str, tuple[int, int]] = field(default_factory=dict)
     names: dict[str, tuple[int, int]] = field(default_factory=dict)
     widths: dict[int, float] = field(default_factory=dict)
     charts: list[Chart] = field(default_factory=list)
     spans: dict[tuple[int, int], int] = field(default_factory=dict)
+    validations: list[Validation] = field(default_factory=list)
+    highlights: list[Highlight] = field(default_factory=list)
 
     def put(
         self, row: int, column: int, content: Content, *, style: str = "value", format: str = "General",  # noqa: A002
@@ -169,6 +200,14 @@ class SheetSpec:
     def width(self, column: int, characters: float) -> None:
         """Set a column's width in characters."""
         self.widths[column] = characters
+
+    def validate(self, validation: Validation) -> None:
+        """Say what may be entered."""
+        self.validations.append(validation)
+
+    def highlight(self, highlight: Highlight) -> None:
+        """Let cells change their look."""
+        self.highlights.append(highlight)
 
     def chart(self, chart: Chart) -> None:
         """Add a chart."""
@@ -230,6 +269,17 @@ class Addresses:
     def formula(self, formula: str, page: str) -> str:
         """Return a formula with every placeholder replaced by an address."""
         return _PLACEHOLDER.sub(lambda m: self.span(m[1], page) if ":" in m[1] else self.cell(m[1], page), formula)
+
+    def area(self, keys: str) -> str:
+        """Return the plain address of a range, without its page."""
+        _, left, top, right, bottom = self.bounds(keys)
+        return f"{column_letters(left)}{top}:{column_letters(right)}{bottom}"
+
+    def relative(self, formula: str, page: str, keys: str) -> str:
+        """Return a formula in which the first cell of a range moves with the cell it is asked for; all others stay."""
+        first = keys.split(":", maxsplit=1)[0]
+        own = self.cell(first, page)
+        return self.formula(formula, page).replace(own, own.replace("$", ""))
 
     def bounds(self, keys: str) -> tuple[str, int, int, int, int]:
         """Return page, first column, first row, last column, last row of a range."""

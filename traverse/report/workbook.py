@@ -17,8 +17,11 @@ from xml.etree import ElementTree
 
 from openpyxl import Workbook
 from openpyxl.comments import Comment
+from openpyxl.formatting.rule import Rule
+from openpyxl.styles.differential import DifferentialStyle
 from openpyxl.utils import get_column_letter
 from openpyxl.workbook.defined_name import DefinedName
+from openpyxl.worksheet.datavalidation import DataValidation
 from openpyxl.worksheet.worksheet import Worksheet
 
 from traverse.report import _charts, _theme
@@ -57,6 +60,7 @@ def build(specs: Sequence[SheetSpec], *, title: str, date: dt.date | None, subje
         sheet = book.create_sheet(spec.title)
         _fill(sheet, spec, addresses, {name: style.name for name, style in named.items()})
         _print_setup(sheet, spec, clean(title))
+        _guard(sheet, spec, addresses)
         for name, (row, column) in spec.names.items():
             book.defined_names[name] = DefinedName(name, attr_text=f"{quoted(spec.title)}!{place(row, column)}")
     for spec in specs:
@@ -136,13 +140,37 @@ def _print_setup(sheet: Any, spec: SheetSpec, title: str) -> None:
     shown = " ".join(title.split())[:_HEADER_LONGEST].replace("&", "&&")
     sheet.oddHeader.left.text, sheet.oddHeader.right.text = shown, "&A"
     sheet.oddFooter.right.text = "page &P of &N"
-    sheet.oddFooter.left.text = "values are live formulas; see Record for inputs and digests"
+    sheet.oddFooter.left.text = spec.footer
     for part in (sheet.oddHeader.left, sheet.oddHeader.right, sheet.oddFooter.left, sheet.oddFooter.right):
         part.size = 8
     if spec.repeat_rows is not None:
         first, last = spec.repeat_rows
         sheet.print_title_rows = f"{first}:{last}"
         sheet.freeze_panes = f"A{last + 1}"
+
+
+def _guard(sheet: Worksheet, spec: SheetSpec, addresses: Addresses) -> None:
+    """Say what may be entered where, what stands out while something is wrong, and what cannot be changed by accident."""
+    for wanted in spec.validations:
+        if wanted.choices:
+            found = DataValidation(type="list", formula1='"' + ",".join(wanted.choices) + '"', allow_blank=True)
+        else:
+            formula = addresses.relative(wanted.formula, spec.title, wanted.cells)
+            found = DataValidation(type="custom", formula1=formula, allow_blank=True)
+        found.errorTitle, found.error = wanted.title, wanted.message
+        found.promptTitle, found.prompt = wanted.title, wanted.message
+        # A warning, not a wall: what was read is written down even when it should not be.
+        found.errorStyle, found.showErrorMessage, found.showInputMessage = "warning", True, False
+        found.add(addresses.area(wanted.cells))
+        sheet.add_data_validation(found)
+    for look in spec.highlights:
+        font, fill = _theme.difference(look.style)
+        formula = addresses.relative(look.formula, spec.title, look.cells)
+        rule = Rule(type="expression", formula=[formula], dxf=DifferentialStyle(font=font, fill=fill))
+        sheet.conditional_formatting.add(addresses.area(look.cells), rule)
+    if spec.protected:
+        sheet.protection.sheet = True
+        sheet.protection.formatColumns = sheet.protection.formatRows = False
 
 
 def _finish(content: bytes, specs: Sequence[SheetSpec], stamp: dt.datetime) -> bytes:
