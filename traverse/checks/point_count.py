@@ -20,8 +20,8 @@ def decide(view: View) -> Verdict:
     wanted, why = _least(rule, view.job.plane)
     if wanted is None:
         return Verdict(
-            status="not evaluated", observed=f"{size} points", message=why, criterion="depends on the straight lengths",
-            source=rule["source"],
+            status="not evaluated", observed=f"{size} points", message=why, source=rule["source"],
+            criterion="depends on the straight lengths" if "steps" in rule else "depends on the shape",
         )
     met = size >= wanted
     return Verdict(
@@ -31,7 +31,11 @@ def decide(view: View) -> Verdict:
 
 
 def _least(rule: Mapping[str, Any], plane: Plane) -> tuple[int | None, str]:
-    shape = plane.section.shape
+    shape: str = plane.section.shape
+    if shape == "ellipse" and "steps" in rule:
+        shape = "round"  # Method 1, 11.3.1.3: an elliptical stack has the points of a round one on each of its diameters
+    if shape not in ("round", "rectangle"):
+        return None, f"The rule gives no number of points for this shape ({shape})."
     if "steps" not in rule:
         return int(rule[shape]), ""
     if plane.upstream is None or plane.downstream is None:

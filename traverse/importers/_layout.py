@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Any, Literal, cast
 
 import numpy as np
@@ -46,14 +46,15 @@ def build(table: Table, section: Section, method: Method, system: Literal["si", 
         if key in table:
             raise JobError(f'{key} with rule = "{rule.name}"', where=table.where(key), expected='these only with rule = "custom"')
     digits = cast("Literal['exact', 'printed']", table.text("digits") or "exact")
-    lines, points = counts(table, rule, section.shape)
+    lines, points, said = counts(table, rule, section)
     placement = layouts.place(
         rule.name, shape=section.shape, width=section.width, height=section.height, lines=lines, points=points,
         angles=_angles(table), along=_along(table, section), names=_names(table), digits=digits,
         wall_distance=_wall_distance(table, rule, section, method, system), radii=table.flag("radii"),
         core=float(sections.ring_diameters(section.size)[1]) if section.shape == "annulus" else 0.0,
     )
-    return to_layout(table, rule.name, placement, section, digits)
+    layout = to_layout(table, rule.name, placement, section, digits)
+    return replace(layout, findings=(*said, *layout.findings))
 
 
 def _wall_distance(table: Table, rule: Rule, section: Section, method: Method, system: str) -> float:
@@ -74,13 +75,23 @@ def _wall_distance(table: Table, rule: Rule, section: Section, method: Method, s
     return method.wall_distance(narrow, system) if rule.name == "equal-area" else 0.0
 
 
-def counts(table: Table, rule: Rule, shape: str) -> tuple[int, int]:
-    """Return the numbers of lines and of points on each, 0 where the rule fixes them."""
-    points, lines = table.get("points"), table.count("lines")
+def counts(table: Table, rule: Rule, section: Section) -> tuple[int, int, tuple[Finding, ...]]:
+    """Return the numbers of lines and of points on each, 0 where a scheme fixes them, and what the rule decided."""
+    shape, points, lines = section.shape, table.get("points"), table.count("lines")
     if points is not None and (isinstance(points, bool) or not isinstance(points, int) or not 1 <= points <= MOST):
         raise JobError(f"{points!r}", where=table.where("points"), expected=f"a whole number from 1 to {MOST}, without quotes")
     if shape in rule.schemes and shape == "rectangle":
-        return int(lines or 0), int(points or 0)
+        return int(lines or 0), int(points or 0), ()
+    if lines is None and points is None and rule.count is not None and shape in ("round", "rectangle") and "radii" not in table:
+        lines, points = rule.count(layouts.Extent(
+            shape=shape, width=section.width, height=section.height, hydraulic_diameter=section.hydraulic_diameter
+        ))
+        if table.text("along") == "width":
+            lines, points = points, lines
+        return lines, points, (Finding(
+            level="note", topic="layout", setting="[layout] lines, points",
+            message=f"{lines} lines of {points} points by the rule, for a section of this size.",
+        ),)
     if lines is None and len(rule.line_counts.get(shape, ())) == 1:
         lines = rule.line_counts[shape][0]
     if points is None and shape == "round" and len(rule.round_points) == 1:
@@ -88,7 +99,7 @@ def counts(table: Table, rule: Rule, shape: str) -> tuple[int, int]:
     for key, value in (("lines", lines), ("points", points)):
         if value is None:
             raise JobError(f"no {key}", where=table.name, expected="lines and points (on each line)")
-    return int(lines or 0), int(points or 0)
+    return int(lines or 0), int(points or 0), ()
 
 
 def _angles(table: Table) -> list[float] | None:

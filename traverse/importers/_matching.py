@@ -8,6 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 
+from traverse import layouts
 from traverse.errors import ReadingError
 from traverse.importers._labels import bare_line, point_number
 from traverse.importers._records import Record
@@ -29,12 +30,13 @@ class Matched:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Plan:
-    """The plan and how readings without point numbers run through it. ``length`` [m] is that of a line."""
+    """The plan and how readings without point numbers run through it. ``length`` [m] is that of a line, in a section of ``shape``."""
 
     layout: Layout
     length: float
     order: str | None
     repeats: bool
+    shape: str = ""
 
     def indices(self, line: str) -> list[int]:
         """Return the places of a line's points in the plan."""
@@ -268,14 +270,33 @@ def _check_depths(
                 f"depth {record.text.get('depth', '')!r} lies {abs(off) * 1000:.1f} mm from the planned "
                 f"{planned[rank] * 1000:.1f} mm", where=record.where,
                 expected="depths from the inner wall, within half a spacing of the plan's",
-                how='if the points were placed otherwise, give them: [layout] rule = "custom"',
+                how=_other_rule(group, departure + planned[ranks], plan)
+                or 'if the points were placed otherwise, give them: [layout] rule = "custom"',
             )
+    other = _other_rule(group, departure + planned[ranks], plan)
+    if other:
+        findings.append(Finding(
+            level="attention", topic="depths", where=group.records[worst].where, setting="[layout] rule",
+            message=f"run {run}: {other}, not of the plan's {plan.layout.rule}",
+        ))
     if abs(departure[worst]) > tolerance:
         findings.append(Finding(
             level="attention", topic="depths", where=group.records[worst].where, setting="[layout]",
             message=f"depths of run {run} depart from the plan by up to {abs(departure[worst]) * 1000:.1f} mm "
             f"(allowed {tolerance * 1000:.1f} mm)",
         ))
+
+
+def _other_rule(group: _Group, depths: Array, plan: Plan) -> str:
+    """Return which other rule the depths of a line follow, where they do and the plan's they do not; empty otherwise."""
+    if plan.shape not in ("round", "rectangle") or len(depths) < 3:
+        return ""
+    matches = layouts.recognise(depths, plan.length, shape=plan.shape, claimed=plan.layout.rule)
+    if not matches or not matches[0].fits or plan.layout.rule in (matches[0].rule, *matches[0].also, "custom"):
+        return ""
+    best = matches[0]
+    return f"the depths of line {group.label or group.line} are those of {best.title}, {best.points} points" + (
+        f" ({best.note})" if best.note else "")
 
 
 def _single(run: str, found: dict[int, list[Record]], plan: Plan, findings: list[Finding]) -> dict[int, Record]:

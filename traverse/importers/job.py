@@ -150,7 +150,7 @@ def _plan(frame: Frame) -> Plan:
     length = section.width if section.shape == "round" or table.text("along") == "width" else section.height
     return Plan(
         layout=frame.layout, length=length, order=table.text("order"),
-        repeats="repeats" in frame.document.table("readings"),
+        repeats="repeats" in frame.document.table("readings"), shape=section.shape,
     )
 
 

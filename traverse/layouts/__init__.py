@@ -9,9 +9,10 @@ from functools import lru_cache
 from importlib import import_module
 
 import numpy as np
+import numpy.typing as npt
 
 from traverse.errors import LayoutError, nearest
-from traverse.layouts import _scheme
+from traverse.layouts import _recognise, _scheme
 from traverse.layouts._base import (
     Array,
     Extent,
@@ -30,11 +31,12 @@ from traverse.layouts._base import (
 )
 from traverse.layouts._custom import place_custom
 from traverse.layouts._integration import fitted_exponent, integrable, velocity_area
+from traverse.layouts._recognise import Match
 from traverse.physics import sections
 
 __all__ = [
-    "Placement", "Rule", "Term", "fitted_exponent", "fractions", "integrable", "line_names", "place", "place_custom", "rule", "rules",
-    "velocity_area",
+    "Extent", "Match", "Placement", "Rule", "Term", "fitted_exponent", "fractions", "integrable", "line_names", "place", "place_custom",
+    "recognise", "rule", "rules", "velocity_area",
 ]
 
 
@@ -73,6 +75,28 @@ def fractions(name: str, shape: str, points: int, digits: str = "exact", diamete
         If the rule does not exist for what is asked.
     """
     return rule(name).fractions(shape, points, digits, diameters)
+
+
+def recognise(depths: npt.ArrayLike, length: float, *, shape: str, claimed: str = "") -> tuple[Match, ...]:
+    """Return the rules that measured depths along a line may follow, the best first; see :class:`Match`.
+
+    Parameters
+    ----------
+    depths : array_like
+        From the inner wall at the port, of a line or of half a diameter. [m]
+    length : float
+        The diameter, or the side the probe travels along. [m]
+    shape : {'round', 'rectangle'}
+        What kind of line it is.
+    claimed : str
+        The rule somebody says it is.
+
+    Raises
+    ------
+    LayoutError
+        If a depth is no number or lies outside the line.
+    """
+    return _recognise.recognise(depths, length, rules(), shape=shape, claimed=claimed)
 
 
 def place(

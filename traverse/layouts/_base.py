@@ -118,6 +118,8 @@ class Rule:
         The fewest points in all, and what their number must be a multiple of.
     wall_distance : callable (diameter [m], unit system), optional
         The nearest a point may lie to the wall of a round section; otherwise the test method says.
+    count : callable, optional
+        The numbers of lines and points the rule asks for in a section, for a job that leaves them to the rule.
     remarks : callable, optional
         What the reader of a plan must know about the rule in this section.
     """
@@ -140,6 +142,7 @@ class Rule:
     least: Mapping[str, int] = field(default_factory=dict)
     multiple: Mapping[str, int] = field(default_factory=dict)
     wall_distance: Callable[[float, str], float] | None = None
+    count: Callable[[Extent], tuple[int, int]] | None = None
     remarks: Callable[[Extent], tuple[str, ...]] | None = None
 
     def shapes(self) -> tuple[str, ...]:

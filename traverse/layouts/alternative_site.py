@@ -6,6 +6,7 @@ import sys
 
 from traverse.layouts import _areas
 from traverse.layouts._base import Extent, Rule
+from traverse.layouts._counts import at_least
 from traverse.physics import wall_limits
 from traverse.units import parse
 
@@ -35,4 +36,5 @@ RULE = Rule(
     least={"round": 40, "rectangle": 42},
     wall_distance=wall_limits.method_1,
     remarks=remarks,
+    count=at_least(40, 42),
 )

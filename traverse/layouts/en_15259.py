@@ -6,6 +6,7 @@ import sys
 
 from traverse.layouts import _areas
 from traverse.layouts._base import Rule
+from traverse.layouts._counts import by_table
 from traverse.physics import wall_limits
 
 RULE = Rule(
@@ -19,4 +20,5 @@ RULE = Rule(
     round_points=range(2, sys.maxsize, 2),
     side_points=range(1, sys.maxsize),
     wall_distance=wall_limits.en_15259,
+    count=by_table("en-15259"),
 )

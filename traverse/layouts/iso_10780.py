@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from traverse.layouts import _areas
 from traverse.layouts._base import Rule
+from traverse.layouts._counts import by_table
 from traverse.layouts._general import EXACT_FOR, MOST, on_diameters, terms
 
 RULE = Rule(
@@ -17,4 +18,5 @@ RULE = Rule(
     exact=terms,
     round_points=range(3, MOST + 1, 2),
     side_points=range(1, 1000),
+    count=by_table("iso-10780", centre=True),
 )

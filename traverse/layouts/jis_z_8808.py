@@ -5,6 +5,7 @@ from __future__ import annotations
 from traverse.errors import LayoutError
 from traverse.layouts import _areas
 from traverse.layouts._base import Array, Rule
+from traverse.layouts._counts import by_table
 
 
 def on_diameter(points: int) -> tuple[Array, Array]:
@@ -25,4 +26,5 @@ RULE = Rule(
     round_points=range(2, 11, 2),
     side_points=range(1, 1000),
     line_counts={"round": (2,)},
+    count=by_table("jis-z-8808"),
 )

@@ -6,6 +6,7 @@ import sys
 
 from traverse.layouts import _areas
 from traverse.layouts._base import Extent, Rule
+from traverse.layouts._counts import at_least
 from traverse.physics import wall_limits
 from traverse.units import parse
 
@@ -37,4 +38,5 @@ RULE = Rule(
     multiple={"round": 4},
     wall_distance=wall_limits.method_1,
     remarks=remarks,
+    count=at_least(8, 9),
 )

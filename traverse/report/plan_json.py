@@ -8,6 +8,8 @@ from typing import Any
 
 from traverse._version import __version__
 from traverse.planning import Clearance, Plan, Rounding, site
+from traverse.planning.recognised import recognised
+from traverse.planning.siting import assess, points_wanted
 from traverse.report import cautions
 from traverse.report.plan_text import sixteenths
 
@@ -30,7 +32,8 @@ def to_dict(planned: Plan) -> dict[str, Any]:
             "title": setup.title, "date": setup.date.isoformat() if setup.date else None, "method": setup.method, "units": setup.units,
             "source": source.name if source else None, "sha256": source.sha256 if source else None,
         },
-        "section": _section(planned), "layout": _layout(planned), "probe": _probe(planned), "profile": _profile(planned),
+        "section": _section(planned), "site": _site(planned),
+        "layout": _layout(planned), "probe": _probe(planned), "profile": _profile(planned),
         "gauge": _gauge(planned), "rounding": {_STEPS[name]: _rounding(rounding) for name, rounding in planned.rounding.items()},
         "points": [_point(planned, i) for i in range(planned.layout.size)],
         "checks": [outcome.to_dict() for outcome in planned.gauge.outcomes] if planned.gauge else [],
@@ -69,6 +72,27 @@ def _layout(planned: Plan) -> dict[str, Any]:
         "rule": layout.rule, "title": layout.title, "source": layout.source, "digits": layout.digits, "points": layout.size,
         "lines": [{"line": name, "points": layout.line.count(name), "port_depth": ports[name]} for name in layout.lines],
         "head_offset": planned.head_offset,
+    }
+
+
+def _site(planned: Plan) -> dict[str, Any]:
+    """Every rule's straight lengths and numbers of points, and the rule that a job's own points follow."""
+    setup = planned.setup
+    return {
+        "straight_lengths": [
+            {"rule": one.rule, "title": one.title, "verdict": one.verdict, "wanted": one.wanted, "before": one.before, "after": one.after,
+             "diameter": one.diameter, "diameter_name": one.diameter_name, "then": one.allowed, "source": one.source,
+             "from_memory": one.from_memory} for one in assess(setup)
+        ],
+        "point_counts": [
+            {"rule": one.rule, "title": one.title, "least": one.least, "points": one.ours, "met": one.met, "note": one.note,
+             "source": one.source, "from_memory": one.from_memory} for one in points_wanted(setup)
+        ],
+        "recognised": [
+            {"line": name, "rule": match.rule, "also": list(match.also), "points": match.points, "fits": match.fits,
+             "largest_deviation": match.largest, "one_sided": match.one_sided, "note": match.note}
+            for name, match in recognised(setup.plane.section, setup.layout)
+        ],
     }
 
 

@@ -7,7 +7,8 @@ import textwrap
 from collections.abc import Iterator, Sequence
 
 from traverse.planning import PRACTICE, Checklist, Clearance, Plan, method_title, site
-from traverse.report import cautions
+from traverse.planning.recognised import recognised, words
+from traverse.report import cautions, site_text
 from traverse.report.numbers import plain, shown, significant, unit_text
 from traverse.report.text import findings, table
 from traverse.units import UNITS
@@ -18,11 +19,11 @@ WIDTH, INDENT = 110, 13
 def plan(planned: Plan) -> str:
     """Return the plan of a traverse as text."""
     lines = [planned.setup.title, method_title(planned.setup), ""]
-    for label, text in (*_place(planned), *_probe(planned), *_pressures(planned)):
+    for label, text in (*_place(planned), *_recognised(planned), *_probe(planned), *_pressures(planned)):
         lines += fact(label, text)
     notes = findings(planned.findings, everything=False)
     lines += ["", *(line for note in notes.splitlines() for line in wrapped(note, "  "))] if notes else []
-    lines += ["", *_marks(planned), ""]
+    lines += ["", *_marks(planned), "", *site_text.site(planned.setup), ""]
     for entry in planned.checklists:
         lines += [*checklist(entry), ""]
     lines += [f"Lines without a source: {PRACTICE}.", ""]
@@ -125,6 +126,17 @@ def _place(planned: Plan) -> Iterator[tuple[str, str]]:
     yield "Layout", f"{layout.title}: {count} line{'s' if count > 1 else ''}, {layout.size} points ({layout.source})"
     yield "Site", f"{_diameters(before_after[0])} before, {_diameters(before_after[1])} after the plane"
     yield "Ports", _ports(planned)
+
+
+def _recognised(planned: Plan) -> Iterator[tuple[str, str]]:
+    """Say which rule the job's own points follow, line by line, lines that say the same together."""
+    layout = planned.layout
+    said: dict[str, list[str]] = {}
+    for name, match in recognised(planned.setup.plane.section, layout):
+        order = sorted((i for i in range(layout.size) if layout.line[i] == name), key=lambda i: float(layout.depth[i]))
+        said.setdefault(words(match, tuple(str(layout.point[i]) for i in order)), []).append(name)
+    for text, names in said.items():
+        yield "Looks like", f"{text}; line{'s' if len(names) > 1 else ''} {', '.join(names)}"
 
 
 def _ports(planned: Plan) -> str:

@@ -104,7 +104,7 @@ def _fill(sheet: Worksheet, spec: SheetSpec, addresses: Addresses, named: Mappin
 
 def _sizes(sheet: Worksheet, spec: SheetSpec) -> None:
     """Set the widths of the columns and the heights of the rows."""
-    last = max((column for _, column in spec.cells), default=1)
+    last = max((*(column for _, column in spec.cells), *spec.widths), default=1)
     for column in range(1, last + 1):
         sheet.column_dimensions[get_column_letter(column)].width = spec.widths.get(column, DEFAULT_WIDTH)
     for (row, _), put in spec.cells.items():

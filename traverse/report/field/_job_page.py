@@ -22,7 +22,9 @@ def page(job_text: str, units: dict[str, str]) -> SheetSpec:
     sheet.put(6, 1, Text("The job as it was planned. To plan otherwise change the job file and write a new workbook."), style="note")
     for number, line in enumerate(lines):
         sheet.put(FIRST + number, 1, Text(line), style="verbatim")
-    sheet.width(1, 110)
+    sheet.width(1, 100)
+    sheet.put(1, 2, Text("of this workbook"), style="faint text")
+    sheet.width(2, 20)
     return sheet
 
 
