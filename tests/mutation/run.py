@@ -24,7 +24,7 @@ COPIED = ("traverse", "tests", "example_data", "docs", ".ci", "README.md", "pypr
 FIRST = "traverse.physics.atmosphere*"
 # Run once, at import, before a mutant is switched on: no test could notice them. Other tests hold what they make: every unit against a unit
 # library, every printed point against its formula.
-AT_IMPORT = ("traverse.units.x__table__", "traverse.layouts.equal_area.x__printed__")
+AT_IMPORT = ("traverse.units.x__table__", "traverse.layouts._areas.x_printed__")
 # A verdict on fewer mutants than this proves nothing.
 LEAST = 200
 
