@@ -100,6 +100,8 @@ def _table() -> tuple[Unit, ...]:
         u("kg/s", "mass flow", 1.0), u("kg/h", "mass flow", 1.0 / 3600.0), u("g/s", "mass flow", 0.001),
         u("lb/s", "mass flow", POUND), u("lb/min", "mass flow", POUND / 60.0), u("lb/h", "mass flow", POUND / 3600.0),
         u("t/h", "mass flow", 1000.0 / 3600.0),
+        u("kg", "mass", 1.0), u("g", "mass", 0.001),
+        u("m3", "volume", 1.0), u("L", "volume", 0.001), u("ml", "volume", 1e-6), u("ft3", "volume", FOOT**3),
         u("kg/m3", "density", 1.0), u("g/cm3", "density", 1000.0), u("g/L", "density", 1.0),
         u("lb/ft3", "density", POUND / FOOT**3),
         u("g/mol", "molar mass", 1.0), u("kg/mol", "molar mass", 1000.0), u("kg/kmol", "molar mass", 1.0),
@@ -142,6 +144,8 @@ _SPELLINGS: dict[str, str] = {
     "lb/cuft": "lb/ft3", "g/g-mol": "g/mol", "g/gmol": "g/mol", "lb/lb-mol": "lb/lbmol", "lbm/lbmol": "lb/lbmol",
     "percent": "%", "pct": "%", "vol%": "%", "%vol": "%", "%v/v": "%", "ppmv": "ppm", "molmol-1": "mol/mol",
     "grains/lb": "gr/lb", "lbm/lbm": "lb/lb", "°": "deg", "degree": "deg", "degrees": "deg", "sec": "s", "hr": "h",
+    "gram": "g", "grams": "g", "m³": "m3", "m^3": "m3", "ft³": "ft3", "ft^3": "ft3", "cuft": "ft3", "dcf": "ft3", "dcm": "m3",
+    "litre": "L", "liter": "L", "litres": "L", "liters": "L",
 }
 # Folded spellings that are read with case lost: K and k, M and m differ, so the exact symbol is tried first.
 _FOLDED = {symbol.lower(): symbol for symbol in UNITS if symbol not in {"MPa", "Hz"}}
@@ -150,7 +154,7 @@ _EXAMPLES = {
     "length": "m, mm, cm, in, ft", "fraction": "%", "humidity ratio": "g/kg, kg/kg, gr/lb, lb/lb",
     "velocity": "m/s, ft/s, ft/min (fpm)", "flow": "m3/s, m3/h, L/s, cfm", "density": "kg/m3, lb/ft3",
     "molar mass": "g/mol, lb/lbmol", "angle": "deg, rad", "mass flow": "kg/s, kg/h, lb/h", "area": "m2, ft2, in2",
-    "time": "s, min, h",
+    "time": "s, min, h", "mass": "g, kg", "volume": "m3, L, ml, ft3",
 }
 _NUMBER = r"[+\-\u2212]?(?:\d+\.?\d*|\.\d+)(?:[eE][+\-]?\d+)?"
 _VALUE = re.compile(rf"\s*({_NUMBER})\s*(.*?)\s*\Z", re.S)

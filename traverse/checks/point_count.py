@@ -21,7 +21,7 @@ def decide(view: View) -> Verdict:
     if wanted is None:
         return Verdict(
             status="not evaluated", observed=f"{size} points", message=why, source=rule["source"],
-            criterion="depends on the straight lengths" if "steps" in rule else "depends on the shape",
+            criterion=f"depends on the {'straight lengths and the ' if 'steps' in rule else ''}shape",
         )
     met = size >= wanted
     return Verdict(

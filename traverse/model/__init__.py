@@ -29,6 +29,7 @@ from traverse.model._job import (
     Status,
     Uncertainties,
 )
+from traverse.model._matter import Fuel, MoistureTrain
 from traverse.model._place import Layout, Plane, Section, Shape
 
 __all__ = [
@@ -44,11 +45,13 @@ __all__ = [
     "Design",
     "Distribution",
     "Finding",
+    "Fuel",
     "Gas",
     "Gauge",
     "Humidity",
     "Job",
     "Layout",
+    "MoistureTrain",
     "Pitot",
     "Plane",
     "Policies",

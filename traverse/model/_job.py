@@ -12,6 +12,7 @@ import numpy as np
 
 from traverse.errors import DomainError, JobError, ReadingError
 from traverse.model._base import Array, Finding, frozen
+from traverse.model._matter import Fuel, MoistureTrain
 from traverse.model._place import Layout, Plane, check_ports
 from traverse.units import Stated
 
@@ -46,7 +47,9 @@ class Pitot:
             )
 
 
-Humidity = Literal["relative_humidity", "wet_bulb", "dew_point", "humidity_ratio", "dry", "moisture", "saturated", "none"]
+Humidity = Literal[
+    "relative_humidity", "wet_bulb", "dew_point", "humidity_ratio", "dry", "moisture", "saturated", "none", "moisture_train", "combustion",
+]
 COMPONENTS = ("oxygen", "carbon_dioxide", "carbon_monoxide", "sulfur_dioxide")
 
 
@@ -55,10 +58,11 @@ class Gas:
     """What flows. Fractions are dry mole fractions, moisture is a wet mole fraction.
 
     ``humidity`` names the form the water was stated in and ``water`` its SI value ('none': not stated, only for a
-    given gas; 'dry': none present).
+    given gas; 'dry': none present; 'combustion': it follows from the fuel). The composition of a mixture is wet and leaves
+    its water out; ``rest`` is the gas that makes up what is not stated.
     """
 
-    kind: Literal["air", "flue-gas", "given"]
+    kind: Literal["air", "flue-gas", "given", "mixture"]
     humidity: Humidity
     water: Stated | None = None
     composition: Mapping[str, Stated] = field(default_factory=lambda: _EMPTY)
@@ -67,6 +71,10 @@ class Gas:
     density_pressure: Stated | None = None
     molar_mass: Stated | None = None
     ratio_of_specific_heats: float | None = None
+    psychrometer: str = ""
+    train: MoistureTrain | None = None
+    fuel: Fuel | None = None
+    rest: str = ""
 
     def fraction(self, name: str) -> float:
         """Return a component's dry mole fraction; 0 where none was stated."""

@@ -24,6 +24,14 @@ VISCOSITY: dict[str, tuple[float, float]] = {
 }
 AIR_BETA = float(_TABLE["air_viscosity"]["beta"])
 AIR_SUTHERLAND = float(_TABLE["air_viscosity"]["sutherland"])
+for _name, _text in _TABLE["more_molar_mass"].items():
+    if _name != "source":
+        MOLAR_MASS[_name] = float(_text)
+        HEAT_CAPACITY[_name] = tuple(float(c) for c in _TABLE["more_heat_capacity"][_name])
+        VISCOSITY[_name] = (float(_TABLE["more_viscosity"][_name][0]), float(_TABLE["more_viscosity"][_name][1]))
+# Dry air as one gas of a mixture.
+HEAT_CAPACITY["air"] = tuple(sum(share * HEAT_CAPACITY[name][k] for name, share in DRY_AIR.items()) for k in range(5))
+VISCOSITY["air"] = (AIR_BETA * VISCOSITY_T0**1.5 / (VISCOSITY_T0 + AIR_SUTHERLAND), AIR_SUTHERLAND)
 # Kelvin. The heat-capacity polynomials are fitted to 1000 K and run away further up: at 1600 K they put the ratio 0.08
 # too high, which is less than 0.01 % of a velocity at 500 Pa; beyond that they are refused.
 COLDEST, HOTTEST = 200.0, 1600.0

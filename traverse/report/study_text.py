@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import csv
 import io
+import textwrap
 from collections.abc import Sequence
 
 from traverse import layouts
@@ -12,6 +13,7 @@ from traverse.report.text import table
 from traverse.study import FAMILIES, TOLD_APART, Comparison, Row, Study
 
 # Rules in the order in which the quarrel is usually had.
+WIDTH = 110
 RIVALS = ("log-tchebycheff", "log-linear")
 RANGES = {"single": "One line alone", "rotated": "The same diameters turned", "shifted": "All points off along the probe as tried"}
 
@@ -31,8 +33,14 @@ def study(result: Study) -> str:
         lines[place:place] = ["", title]
     parts = [result.title, f"What other layouts would have given, from the {_basis(result)}", "", *lines, ""]
     parts += ["Difference from the section mean of the fitted field; u: standard uncertainty, of the layout alone." if measured(result)
-              else "Difference from the exact mean of the formula; velocities over that in the middle.", "", verdict(result), "", "Limits"]
-    return "\n".join([*parts, *(f"- {note}" for note in result.notes)])
+              else "Difference from the exact mean of the formula; velocities over that in the middle.", "", *_wrapped(verdict(result)), "", "Limits"]
+    return "\n".join([*parts, *(line for note in result.notes for line in _wrapped(f"- {note}", "  "))])
+
+
+def _wrapped(paragraph: str, indent: str = "") -> list[str]:
+    """Return a paragraph as lines; a number stays with its percent sign."""
+    lines = textwrap.wrap(paragraph.replace(" %", "\u00a0%"), WIDTH, subsequent_indent=indent, break_long_words=False, break_on_hyphens=False)
+    return [line.replace("\u00a0", " ") for line in lines]
 
 
 def measured(result: Study) -> bool:
