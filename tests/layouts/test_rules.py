@@ -56,6 +56,16 @@ def test_a_centre_read_on_every_diameter_counts_once():
     assert float(placed.weight @ peak) == pytest.approx(1 / 9)
 
 
+def test_a_centre_that_is_read_once():
+    each, once = place("general", points=5), place("general", points=5, centre="once")
+    assert len(once.x) == 9 and once.line.count("B") == 4 and once.point[-4:] == (1, 2, 3, 4)
+    np.testing.assert_allclose(once.weight, 1 / 9)
+    velocity = lambda p: 1 + 0.3 * p.x - 0.2 * p.y + p.x**2  # noqa: E731
+    assert float(once.weight @ velocity(once)) == pytest.approx(float(each.weight @ velocity(each)))
+    with pytest.raises(LayoutError, match="centre point"):
+        place("log-linear", points=6, centre="once")
+
+
 # --- the 26-point scheme (ISO 3966, from memory)
 
 

@@ -52,6 +52,7 @@ def build(table: Table, section: Section, method: Method, system: Literal["si", 
         angles=_angles(table), along=_along(table, section), names=_names(table), digits=digits,
         wall_distance=_wall_distance(table, rule, section, method, system), radii=table.flag("radii"),
         core=float(sections.ring_diameters(section.size)[1]) if section.shape == "annulus" else 0.0,
+        centre=table.text("centre") or "each",
     )
     layout = to_layout(table, rule.name, placement, section, digits)
     return replace(layout, findings=(*said, *layout.findings))

@@ -41,12 +41,14 @@ MEASURED = Key(kind="measured", dimension="length")
 FRACTION, LENGTH, TEMPERATURE, PRESSURE = _q("fraction"), _q("length"), _q("temperature"), _q("pressure")
 
 GAS: Mapping[str, Key] = {
-    "kind": _choice("air", "flue-gas", "given"),
+    "kind": _choice("air", "flue-gas", "given", "mixture"),
     "oxygen": FRACTION, "carbon_dioxide": FRACTION, "carbon_monoxide": FRACTION, "sulfur_dioxide": FRACTION,
     "relative_humidity": FRACTION, "moisture": FRACTION, "wet_bulb": TEMPERATURE, "dew_point": TEMPERATURE,
     "humidity_ratio": _q("humidity ratio"), "dry": FLAG, "saturated": FLAG,
     "density": _q("density"), "temperature": TEMPERATURE, "pressure": PRESSURE, "molar_mass": _q("molar mass"),
     "ratio_of_specific_heats": NUMBER,
+    "moisture_train": Key(kind="any"), "psychrometer": _choice("energy-balance", "carrier", "ferrel"), "fuel": Key(kind="any"),
+    "excess_air": FRACTION, "air_humidity_ratio": _q("humidity ratio"), "components": Key(kind="any"), "rest": TEXT,
 }
 CONDITIONS: Mapping[str, Key] = {
     "barometric": PRESSURE, "altitude": LENGTH, "model": _choice("standard-atmosphere"), "static": PRESSURE,
@@ -81,6 +83,7 @@ SCHEMA: Mapping[str, Mapping[str, Key]] = {
         "order": _choice("inward", "outward", "alternate"), "digits": _choice("exact", "printed"),
         "depths": Key(kind="quantities", dimension="length"), "weights": Key(kind="any"), "file": TEXT,
         "positions": Key(kind="quantities", dimension="length"), "radii": FLAG, "wall_distance": LENGTH,
+        "centre": _choice("each", "once"),
         "wall_exponent": Key(kind="any"),
     },
     "pitot": PITOT,

@@ -102,7 +102,7 @@ def recognise(depths: npt.ArrayLike, length: float, *, shape: str, claimed: str 
 def place(
     name: str, *, shape: str, width: float, height: float, lines: int = 0, points: int = 0,
     angles: Sequence[float] | None = None, along: str = "height", names: Sequence[str] | None = None, digits: str = "exact",
-    wall_distance: float = 0.0, radii: bool = False, core: float = 0.0,
+    wall_distance: float = 0.0, radii: bool = False, core: float = 0.0, centre: str = "each",
 ) -> Placement:
     """Return the points of a rule in a section.
 
@@ -130,6 +130,8 @@ def place(
         Round sections: each line runs from its port to the centre only, with ``points`` on it.
     core : float
         Diameter of the core of an annulus. [m]
+    centre : {'each', 'once'}
+        A rule with a centre point: read on every line, with its share each, or on the first line only.
 
     Raises
     ------
@@ -137,6 +139,9 @@ def place(
         If the rule does not exist for what is asked.
     """
     chosen = rule(name)
+    one_of("centre", centre, ("each", "once"), "[layout] centre")
+    if centre == "once" and (chosen.round_by_lines is None or shape not in ("round", "ellipse")):
+        raise LayoutError('centre = "once"', where="[layout] centre", expected="a rule with a centre point, in a round section")
     checked_size(shape, width, height)
     one_of("along", along, ("height", "width"), "[layout] along")
     chosen.refuse_shape(shape)
@@ -160,6 +165,7 @@ def place(
     else:
         turned = checked_angles(angles, lines, 2.0 * np.pi if radii else np.pi)
         placed = _round(chosen, (width, height), points, turned, labels, digits, wall_distance, radii=radii)
+        placed = _centre_once(placed) if centre == "once" else placed
     return replace(placed, notes=placed.notes + _remarks(chosen, shape, width, height))
 
 
@@ -202,6 +208,20 @@ def _round(
         notes = (f"{int(moved.sum()) // lines} points on each line moved out to {least * 1000:.1f} mm from the wall; "
                  "where two fall together both are read and both count",)
     return _placement(chosen, x, y, depths, np.tile(share / lines, lines), labels, points, tuple(moved.tolist()), notes, digits)
+
+
+def _centre_once(placed: Placement) -> Placement:
+    """Keep the centre point on the first line only, with all of its weight; the points of the others are counted anew."""
+    at_centre = np.hypot(placed.x, placed.y) <= 1e-9 * float(np.max(placed.depth))
+    first = int(np.argmax(at_centre))
+    weight = placed.weight.copy()
+    weight[first] = weight[at_centre].sum()
+    kept = np.flatnonzero(~at_centre | (np.arange(len(weight)) == first)).tolist()
+    line = tuple(placed.line[i] for i in kept)
+    return replace(
+        placed, x=placed.x[kept], y=placed.y[kept], depth=placed.depth[kept], weight=weight[kept], line=line,
+        point=tuple(line[:k + 1].count(name) for k, name in enumerate(line)), moved=tuple(placed.moved[i] for i in kept),
+    )
 
 
 def _on_radius(chosen: Rule, points: int, digits: str, lines: int) -> tuple[Array, Array]:
