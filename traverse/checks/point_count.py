@@ -17,7 +17,7 @@ def decide(view: View) -> Verdict:
             status="not applicable", observed="", message="The method sets no number of points.", criterion="none", source=""
         )
     size = view.job.layout.size
-    wanted, why = _least(rule, view.job.plane)
+    wanted, why = _least(rule, view.job.plane, view.job.units)
     if wanted is None:
         return Verdict(
             status="not evaluated", observed=f"{size} points", message=why, source=rule["source"],
@@ -30,7 +30,7 @@ def decide(view: View) -> Verdict:
     )
 
 
-def _least(rule: Mapping[str, Any], plane: Plane) -> tuple[int | None, str]:
+def _least(rule: Mapping[str, Any], plane: Plane, system: str) -> tuple[int | None, str]:
     shape: str = plane.section.shape
     if shape == "ellipse" and "steps" in rule:
         shape = "round"  # Method 1, 11.3.1.3: an elliptical stack has the points of a round one on each of its diameters
@@ -45,7 +45,8 @@ def _least(rule: Mapping[str, Any], plane: Plane) -> tuple[int | None, str]:
     for least_before, least_after, round_count, rectangle_count in rule["steps"]:
         if before >= float(least_before) * (1 - 1e-9) and after >= float(least_after) * (1 - 1e-9):
             count = int(round_count if shape == "round" else rectangle_count)
-            if count == 12 and diameter <= parse(rule["small_limit"], "length").value * (1 + 1e-12):
+            small = parse(rule["small_limit_us" if system == "us" else "small_limit"], "length").value
+            if count == 12 and diameter <= small * (1 + 1e-12):
                 count = int(rule["small_round" if shape == "round" else "small_rectangle"])
             return count, f" at {before:.2f} diameters before and {after:.2f} after"
     return None, "The site is below the least distances; the simplified procedure does not apply."

@@ -77,7 +77,9 @@ def fractions(name: str, shape: str, points: int, digits: str = "exact", diamete
     return rule(name).fractions(shape, points, digits, diameters)
 
 
-def recognise(depths: npt.ArrayLike, length: float, *, shape: str, claimed: str = "") -> tuple[Match, ...]:
+def recognise(
+    depths: npt.ArrayLike, length: float, *, shape: str, claimed: str = "", rounding: float = 0.0254 / 16
+) -> tuple[Match, ...]:
     """Return the rules that measured depths along a line may follow, the best first; see :class:`Match`.
 
     Parameters
@@ -90,13 +92,15 @@ def recognise(depths: npt.ArrayLike, length: float, *, shape: str, claimed: str 
         What kind of line it is.
     claimed : str
         The rule somebody says it is.
+    rounding : float
+        The step the depths were rounded to besides three printed digits: a sixteenth of an inch by default, 0 for a document. [m]
 
     Raises
     ------
     LayoutError
         If a depth is no number or lies outside the line.
     """
-    return _recognise.recognise(depths, length, rules(), shape=shape, claimed=claimed)
+    return _recognise.recognise(depths, length, rules(), shape=shape, claimed=claimed, rounding=rounding)
 
 
 def place(

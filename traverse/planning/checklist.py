@@ -55,7 +55,7 @@ def _take(setup: Setup) -> tuple[Item, ...]:
                          source=good["source"])
     moisture = {
         "air": "psychrometer or humidity probe", "flue-gas": "analyser or sampling train for oxygen, carbon dioxide and moisture",
-        "given": "the statement of density or molar mass for this gas",
+        "given": "the statement of density or molar mass for this gas", "mixture": "the analysis of this gas, with its moisture",
     }
     return (
         Item(text=f"{'S-type probe' if s_type else 'pitot-static tube'} of the length above, straight, with its coefficient and date"),

@@ -12,7 +12,7 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 
-from traverse import tables
+from traverse import tables, treatment
 from traverse.model import Array, Gas, Setup
 from traverse.physics import gas, moist_air, quadrature, sections
 from traverse.physics.sections import Size
@@ -155,20 +155,22 @@ def density_of(setup: Setup) -> tuple[float | None, str]:
         return None, "no temperature: state the one to be expected as [conditions] temperature"
     temperature = np.array([state.temperature.value])
     pressure_ = np.array([state.barometric.value + (state.static.value if state.static else 0.0)])
-    molar_mass = _molar_mass(matter, temperature, pressure_)
+    molar_mass = _molar_mass(matter, temperature, pressure_, np.array([state.barometric.value]))
     if molar_mass is None:
         return None, "neither density nor molar mass: state one of them in [gas]"
     found = float(gas.density(pressure_, molar_mass, temperature)[0])
     return (found, "") if math.isfinite(found) else (None, "gas and conditions give no density")
 
 
-def _molar_mass(matter: Gas, temperature: Array, absolute: Array) -> Array | None:
+def _molar_mass(matter: Gas, temperature: Array, absolute: Array, barometric: Array) -> Array | None:
     """Return the molar mass of the wet gas [g/mol]; a density at other conditions is one at the same molar mass."""
     if matter.kind == "given":
         if matter.density is not None and matter.density_temperature is not None and matter.density_pressure is not None:
             molar = matter.density.value * gas.R * matter.density_temperature.value / matter.density_pressure.value
             return np.array([molar * 1e3])
         return None if matter.molar_mass is None else np.array([matter.molar_mass.value])
+    if matter.kind == "mixture" or matter.train or matter.fuel or matter.psychrometer:
+        return treatment.molar_mass(matter, temperature, absolute, barometric)
     water = np.array([matter.water.value if matter.water else 0.0])
     moisture = moist_air.mole_fraction(matter.humidity, water, temperature, absolute)
     dry = np.array([gas.MOLAR_MASS["air"]])

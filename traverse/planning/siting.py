@@ -53,7 +53,20 @@ class PointCount:
 def assess(setup: Setup) -> tuple[SiteVerdict, ...]:
     """Return what every rule says of the straight lengths before and after the plane."""
     rules = tables.load("site_rules")["site"]
-    return tuple(_verdict(rule, setup) for rule in rules if _within(setup.plane.section, rule))
+    found = [_verdict(rule, setup) for rule in rules if _within(setup.plane.section, rule)]
+    return (*found, *_fan_outlet(setup))
+
+
+def _fan_outlet(setup: Setup) -> tuple[SiteVerdict, ...]:
+    """Return the effective length behind a fan outlet: 2.5 diameters up to 2500 ft/min, one more for every 1000 ft/min."""
+    if setup.design is None:
+        return ()
+    table = tables.load("site_rules")["fan_outlet"]
+    speed, step = (parse(table[name], "velocity").value for name in ("up_to", "step"))
+    velocity = setup.design.actual_flow.value / setup.plane.section.area
+    wanted = float(table["least"]) + max(0.0, (velocity - speed) / step)
+    rule = dict(table) | {"before": f"{wanted:.3g}"}
+    return (_verdict(rule, setup),)
 
 
 def _within(section: Section, rule: Mapping[str, Any]) -> bool:
@@ -66,18 +79,28 @@ def _within(section: Section, rule: Mapping[str, Any]) -> bool:
 
 def _verdict(rule: Mapping[str, Any], setup: Setup) -> SiteVerdict:
     section, plane = setup.plane.section, setup.plane
-    mean = rule["diameter"] == "mean" and section.shape != "round"
-    diameter = (section.width + section.height) / 2.0 if mean else section.hydraulic_diameter
+    diameter, name = _diameter(rule["diameter"], section)
     before, after = (None if length is None else length.value / diameter for length in (plane.upstream, plane.downstream))
     wanted = tuple(float(rule[name]) if rule[name] else None for name in ("before", "after"))
     least = tuple(float(rule[name]) if rule[name] else None for name in ("least_before", "least_after"))
     words = " and ".join(f"{value:g} {side}" for value, side in zip(wanted, ("before", "after"), strict=True) if value is not None)
     verdict, allowed = _judge((before, after), wanted, least, rule)
+    if verdict == "met" and "caveat" in rule and after is not None and after < float(rule["caveat_after"]) * SLACK:
+        allowed = str(rule["caveat"])
     return SiteVerdict(
         rule=rule["rule"], title=rule["title"], verdict=verdict, wanted=words, before=before, after=after, diameter=diameter,
-        diameter_name="mean of width and height" if mean else "hydraulic diameter", allowed=allowed, source=rule["source"],
+        diameter_name=name, allowed=allowed, source=rule["source"],
         from_memory=rule["memory"],
     )
+
+
+def _diameter(kind: str, section: Section) -> tuple[float, str]:
+    """Return the diameter a rule counts in, and its name. On a circle all are one."""
+    if kind == "mean" and section.shape != "round":
+        return (section.width + section.height) / 2.0, "mean of width and height"
+    if kind == "equal-area" and section.shape != "round":
+        return section.equal_area_diameter, "diameter of equal area"
+    return section.hydraulic_diameter, "hydraulic diameter"
 
 
 def _judge(
@@ -100,50 +123,56 @@ def _all(lengths: Sequence[float | None], wanted: Sequence[float | None]) -> boo
 
 
 def points_wanted(setup: Setup) -> tuple[PointCount, ...]:
-    """Return the least number of points by every rule, beside the number of the layout."""
-    found = [*_method_1(setup)]
+    """Return the least number of points by every rule, beside the number of the layout; a centre read on several lines is one."""
+    section, layout = setup.plane.section, setup.layout
+    centre = sum(bool(math.hypot(x, y) < 1e-9 * section.width) for x, y in zip(layout.x, layout.y, strict=True))
+    ours = layout.size - max(centre - 1, 0)
+    found = [*_method_1(setup, ours)]
     for rule in tables.load("site_rules")["count"]:
-        least, note = _least(rule, setup.plane.section)
+        least, note = _least(rule, section)
+        own = ours - (centre > 0) if rule.get("without_centre") else ours
         found.append(PointCount(
-            rule=rule["rule"], title=rule["title"], least=least, ours=setup.layout.size, note=note, source=rule["source"],
-            from_memory=rule["memory"],
+            rule=rule["rule"], title=rule["title"], least=least, ours=own, note=note, source=rule["source"], from_memory=rule["memory"],
         ))
     return tuple(found)
 
 
-def _method_1(setup: Setup) -> list[PointCount]:
+def _method_1(setup: Setup, ours: int) -> list[PointCount]:
     table = tables.load("site_rules")
     velocity, particulate = table["point_count"]["epa-2"], table["particulate"]
     section, plane = setup.plane.section, setup.plane
-    if section.hydraulic_diameter < 0.3 * SLACK:
-        return [PointCount(
-            rule="epa-1a", title="EPA Method 1A, least", least=8 if section.shape == "round" else 9, ours=setup.layout.size,
-            note="more by the distances, as in Method 1; round: a multiple of 4", source="40 CFR 60 App. A-1 Method 1A, 11.2 (read)",
-            from_memory=False,
-        )]
+    small = section.hydraulic_diameter < 0.3 * SLACK
+    wanted = [("EPA Method 1A, velocity" if small else "EPA Method 1, velocity", velocity["steps"], velocity["source"])]
+    wanted += [] if small else [("EPA Method 1, particulate", particulate["steps"], particulate["source"])]
     found = []
-    for title, steps, source in (
-        ("EPA Method 1, velocity", velocity["steps"], velocity["source"]),
-        ("EPA Method 1, particulate", particulate["steps"], particulate["source"]),
-    ):
-        least, note = (None, "straight lengths not stated") if plane.upstream is None or plane.downstream is None else by_distance(
-            steps, section, plane.upstream.value, plane.downstream.value)
+    for title, steps, source in wanted:
+        if section.shape not in ("round", "ellipse", "rectangle"):
+            least, note = None, f"Method 1 has no {section.shape}"
+        elif section.hydraulic_diameter < 0.1 * SLACK:
+            least, note = None, "below 0.10 m: neither Method 1 nor 1A"
+        elif plane.upstream is None or plane.downstream is None:
+            least, note = None, "straight lengths not stated"
+        else:
+            least, note = by_distance(steps, section, plane.upstream.value, plane.downstream.value, setup.units)
         found.append(PointCount(
-            rule="epa-1", title=title, least=least, ours=setup.layout.size, note=note, source=source, from_memory=True
+            rule="epa-1a" if small else "epa-1", title=title, least=least, ours=ours, note=note, source=source, from_memory=True
         ))
     return found
 
 
-def by_distance(steps: Sequence[Sequence[str]], section: Section, upstream: float, downstream: float) -> tuple[int | None, str]:
+def by_distance(
+    steps: Sequence[Sequence[str]], section: Section, upstream: float, downstream: float, system: str
+) -> tuple[int | None, str]:
     """Return the number of points of Method 1 by the straight lengths [m]: the higher of what the two ask for, or why there is none."""
     small = tables.load("site_rules")["point_count"]["epa-2"]
     diameter = section.hydraulic_diameter
     before, after = upstream / diameter, downstream / diameter
-    rounded = section.shape == "round"
+    rounded = section.shape != "rectangle"
+    limit = parse(small["small_limit_us" if system == "us" else "small_limit"], "length").value
     for least_before, least_after, round_count, rectangle_count in steps:
         if before >= float(least_before) * SLACK and after >= float(least_after) * SLACK:
             count = int(round_count if rounded else rectangle_count)
-            if count == 12 and diameter <= parse(small["small_limit"], "length").value * (1 + 1e-12):
+            if count == 12 and diameter <= limit * (1 + 1e-12):
                 count = int(small["small_round" if rounded else "small_rectangle"])
             return count, f"at {before:.2f} diameters before and {after:.2f} after"
     if diameter > parse("24 in", "length").value:
@@ -153,38 +182,59 @@ def by_distance(steps: Sequence[Sequence[str]], section: Section, upstream: floa
 
 def _least(rule: Mapping[str, Any], section: Section) -> tuple[int | None, str]:
     """Return a rule's least number of points for a section, and how it comes to it."""
-    rounded = section.shape in ("round", "ellipse", "annulus")
-    if not rounded and "side_points" in rule:
+    if section.shape not in ("round", "rectangle"):
+        return None, f"no figure for a section of shape {section.shape}"
+    return _round(rule, section) if section.shape == "round" else _rectangle(rule, section)
+
+
+def _round(rule: Mapping[str, Any], section: Section) -> tuple[int, str]:
+    by_area = rule["by"] == "area"
+    least = int(_step(rule["round"], section.area if by_area else section.width))
+    if "round_by_diameter" in rule:
+        least = max(least, int(_step(rule["round_by_diameter"], section.width)))
+    note = f"area {section.area:.3g} m2" if by_area else f"diameter {section.width:.3g} m"
+    return _by_area(rule, section, least, note) if by_area else (least, note)
+
+
+def _by_area(rule: Mapping[str, Any], section: Section, least: int, note: str) -> tuple[int, str]:
+    """Return the number with what a rule wants for every square metre of a large section."""
+    if "per_square_metre" not in rule or section.area <= float(rule["above"]):
+        return least, note
+    least = max(least, math.ceil(float(rule["per_square_metre"]) * section.area * SLACK))
+    if "enough" not in rule:
+        return least, note
+    return min(least, int(rule["enough"])), f"{note}; {rule['enough']} normally enough"
+
+
+def _rectangle(rule: Mapping[str, Any], section: Section) -> tuple[int, str]:
+    if "side_points" in rule:
         across, up = (int(_step(rule["side_points"], side)) for side in (section.width, section.height))
         return max(across * up, 25), f"{across} x {up}"
-    if not rounded and "cell_side" in rule:
+    if "cell_side" in rule:
         return _cells(rule, section)
-    by = rule["by"] if rounded else rule.get("rectangle_by", rule["by"])
-    value = section.area if by == "area" else section.hydraulic_diameter
-    key = "round" if rounded else "rectangle"
-    if key not in rule:
-        return None, f"no figure for a {section.shape}"
-    least = int(_step(rule[key], value))
-    note = f"{'area' if by == 'area' else 'diameter'} {value:.3g} {'m2' if by == 'area' else 'm'}"
-    if "per_square_metre" in rule and section.area > float(rule["above"]):
-        if not rounded or rule["by"] == "area":
-            least = max(least, math.ceil(float(rule["per_square_metre"]) * section.area * SLACK))
-        if "enough" in rule:
-            least, note = min(least, int(rule["enough"])), f"{note}; {rule['enough']} normally enough"
-    if not rounded and "cell_most" in rule:
-        side = float(rule["cell_most"])
-        least = max(least, math.ceil(section.width / side * SLACK) * math.ceil(section.height / side * SLACK))
+    least, note = int(_step(rule["rectangle"], section.area)), f"area {section.area:.3g} m2"
+    if "longest_cell" in rule:
+        side = math.isqrt(least)
+        long, short = max(section.width, section.height), min(section.width, section.height)
+        pieces = max(side, math.ceil(long / (float(rule["longest_cell"]) * short / side) * SLACK))
+        least, note = side * pieces, f"{note}; {side} x {pieces}, cells of at most {rule['longest_cell']} : 1"
+    least, note = _by_area(rule, section, least, note)
+    if "cell_most" in rule:
+        side_most = float(rule["cell_most"])
+        least = max(least, math.ceil(section.width / side_most * SLACK) * math.ceil(section.height / side_most * SLACK))
     return least, note
 
 
 def _cells(rule: Mapping[str, Any], section: Section) -> tuple[int, str]:
     """Return the number of cells of at most a side that goes by the area."""
     limits = rule["cell_side"]
+    if section.area <= float(rule.get("single_up_to", "0")):
+        return 1, f"area {section.area:.3g} m2: one central point allowed"
     if section.area > float(limits[-1][0]):
         return int(rule["most"]), f"area {section.area:.3g} m2: equal areas, normally up to {rule['most']}"
     side = float(_step(limits, section.area))
     across, up = (math.ceil(length / side * SLACK) for length in (section.width, section.height))
-    return across * up, f"cells of at most {side:g} m: {across} x {up}"
+    return min(across * up, int(rule["most"])), f"cells of at most {side:g} m: {across} x {up}"
 
 
 def _step(steps: Sequence[Sequence[str]], value: float) -> str:

@@ -18,7 +18,7 @@ def site(setup: Setup) -> list[str]:
     rows = [("rule", "least", "here", "", ""), *(_count_row(one) for one in points_wanted(setup))]
     lines += table(rows, right=(1, 2)).splitlines()
     lines += ["", *_sources(setup)]
-    lines += ["", "(m): from memory, not held against the document. Diameter: " + (
+    lines += ["", "(m): from memory, not held against the document; (c): common practice, no source. Diameter: " + (
         f"{_length(section.hydraulic_diameter, setup.units)}." if section.shape == "round" else
         f"the hydraulic one, {_length(section.hydraulic_diameter, setup.units)}"
     )]
@@ -55,15 +55,17 @@ def _length(value: float, system: str) -> str:
 
 def _site_row(one: SiteVerdict) -> tuple[str, ...]:
     name = "" if one.diameter_name == "hydraulic diameter" else f", by the {one.diameter_name}"
-    return _marked(one.title, one.from_memory) + name, one.wanted, _number(one.before), _number(one.after), one.verdict
+    return _marked(one.title, one.from_memory, one.source) + name, one.wanted, _number(one.before), _number(one.after), one.verdict
 
 
 def _count_row(one: PointCount) -> tuple[str, ...]:
     verdict = "" if one.met is None else ("enough" if one.met else "too few")
-    return _marked(one.title, one.from_memory), "-" if one.least is None else str(one.least), str(one.ours), verdict, one.note
+    return _marked(one.title, one.from_memory, one.source), "-" if one.least is None else str(one.least), str(one.ours), verdict, one.note
 
 
-def _marked(title: str, from_memory: bool) -> str:
+def _marked(title: str, from_memory: bool, source: str) -> str:
+    if "common practice" in source:
+        return f"{title} (c)"
     return f"{title} (m)" if from_memory else title
 
 

@@ -32,14 +32,16 @@ def study(result: Study) -> str:
     for place, title in reversed(breaks):
         lines[place:place] = ["", title]
     parts = [result.title, f"What other layouts would have given, from the {_basis(result)}", "", *lines, ""]
-    parts += ["Difference from the section mean of the fitted field; u: standard uncertainty, of the layout alone." if measured(result)
-              else "Difference from the exact mean of the formula; velocities over that in the middle.", "", *_wrapped(verdict(result)), "", "Limits"]
+    basis = "Difference from the section mean of the fitted field; u: standard uncertainty, of the layout alone." if measured(result) \
+        else "Difference from the exact mean of the formula; velocities over that in the middle."
+    parts += [basis, "", *_wrapped(verdict(result)), "", "Limits"]
     return "\n".join([*parts, *(line for note in result.notes for line in _wrapped(f"- {note}", "  "))])
 
 
 def _wrapped(paragraph: str, indent: str = "") -> list[str]:
     """Return a paragraph as lines; a number stays with its percent sign."""
-    lines = textwrap.wrap(paragraph.replace(" %", "\u00a0%"), WIDTH, subsequent_indent=indent, break_long_words=False, break_on_hyphens=False)
+    kept = paragraph.replace(" %", "\u00a0%")
+    lines = textwrap.wrap(kept, WIDTH, subsequent_indent=indent, break_long_words=False, break_on_hyphens=False)
     return [line.replace("\u00a0", " ") for line in lines]
 
 

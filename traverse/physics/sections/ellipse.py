@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import numpy as np
 import numpy.typing as npt
-from scipy.special import ellipe
 
 from traverse.physics.sections._base import Array, Shape, Size, about_centre, box, ring
 
@@ -18,6 +17,8 @@ def _area(size: Size) -> Array:
 
 def _perimeter(size: Size) -> Array:
     """Return 4 a E(1 - b^2/a^2) with the complete elliptic integral of the second kind, a the longer half-axis."""
+    from scipy.special import ellipe  # costs as much to import as all the rest of a plan
+
     width, height = box(size)
     long, short = np.maximum(width, height) / 2.0, np.minimum(width, height) / 2.0
     return np.asarray(4.0 * long * ellipe(1.0 - np.square(short / long)))
