@@ -34,8 +34,8 @@ def load(path: str | Path) -> Job:
     place = _job_file(path)
     if place.suffix.lower() == field_workbook.SUFFIX:
         book = field_workbook.read(place, filled=True)
-        return job.load(book.document, lambda _: book.table, long_table.points)
-    return job.load(_document.read(place), _readings, long_table.points)
+        return job.load(book.document, lambda _: book.table, long_table.points, _rows)
+    return job.load(_document.read(place), _readings, long_table.points, _rows)
 
 
 def load_setup(path: str | Path) -> Setup:
@@ -85,6 +85,11 @@ def _job_file(path: str | Path) -> Path:
             how="save the field workbook as .xlsx (Office Open XML)",
         )
     return place
+
+
+def _rows(path: Path, name: str) -> Table:
+    """Read a table of readings beside the job in the long form."""
+    return long_table.read(path, name, long_table.Wanted())
 
 
 def _readings(document: Document) -> Table:

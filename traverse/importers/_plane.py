@@ -266,8 +266,10 @@ def _wall_factor(table: Table, measured: Plane) -> tuple[float | None, str, tupl
         if not 0.9 <= value <= 1.0:
             raise JobError(f"a wall factor of {value:g}", where=where, expected="a number from 0.9 to 1")
         return float(value), "[corrections] wall_factor", ()
+    if value == "measured":
+        return None, "", ()  # found when the runs are known
     if value != "default":
-        raise JobError(f"{value!r}", where=where, expected='a bare number, or "default"')
+        raise JobError(f"{value!r}", where=where, expected='a bare number, "default", or "measured" with [wall_effects]')
     if measured.section.shape != "round":
         raise JobError(
             f'"default" in a section of shape {measured.section.shape}', where=where,

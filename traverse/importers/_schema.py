@@ -100,6 +100,7 @@ SCHEMA: Mapping[str, Mapping[str, Key]] = {
     "uncertainty": {},
     "design": {"actual_flow": _q("flow", basis="actual"), "velocity": _q("velocity"), "tolerance": TEXT, "profile": NUMBER},
     "gauge": {"range": PRESSURE, "division": PRESSURE},
+    "wall_effects": {"kind": _choice("partial", "complete"), "file": TEXT, "run": TEXT},
     "corrections": {"wall_factor": Key(kind="any"), "turbulence": FRACTION, "blockage": FLAG},
 }
 # Keys of the contract that this version does not act on: refused, with what there is instead.

@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import Literal, cast
 
 from traverse import methods
 from traverse.errors import JobError
-from traverse.importers import _gas, _layout, _plane, _runs, _uncertainty
+from traverse.importers import _gas, _layout, _plane, _runs, _uncertainty, _wall_effects
 from traverse.importers._document import Document
 from traverse.importers._labels import point_number
 from traverse.importers._matching import Plan
@@ -37,20 +37,21 @@ class Frame:
     findings: tuple[Finding, ...]
 
 
-def load(document: Document, readings: ReadReadings, points: ReadPoints) -> Job:
+def load(document: Document, readings: ReadReadings, points: ReadPoints, rows: _wall_effects.ReadRows) -> Job:
     """Return the job of a document."""
     table = readings(document)
     frame = _frame(document, table, readings, points)
     corrections, correction_findings = _plane.corrections(document.table("corrections"), frame.plane)
     runs, run_findings = _runs.build(document, table, _plan(frame), frame.method)
     _refuse_blockage(corrections, runs)
+    corrections, sources, wall_findings = _wall(document, frame, runs, corrections, rows)
     return Job(
         title=_title(document), date=document.table("job").get("date"), method=frame.method.id, units=frame.units,
         plane=frame.plane, layout=frame.layout, runs=runs, reference=_plane.reference(document.table("reference")),
         uncertainties=_uncertainty.build(document.uncertainty, runs),
         design=_plane.design(document.table("design"), frame.plane.section),
-        corrections=corrections, policies=_policies(document), sources=_sources(frame, table),
-        findings=tuple(dict.fromkeys((*frame.findings, *table.findings, *correction_findings, *run_findings))),
+        corrections=corrections, policies=_policies(document), sources=(*_sources(frame, table), *sources),
+        findings=tuple(dict.fromkeys((*frame.findings, *table.findings, *correction_findings, *run_findings, *wall_findings))),
     )
 
 
@@ -77,6 +78,25 @@ def load_setup(document: Document, readings: ReadReadings, points: ReadPoints) -
         design=_plane.design(document.table("design"), frame.plane.section), sources=frame.sources,
         findings=tuple(dict.fromkeys(findings)), gauge=_plane.gauge(document.table("gauge")),
     )
+
+
+def _wall(
+    document: Document, frame: Frame, runs: tuple[Run, ...], corrections: Corrections, rows: _wall_effects.ReadRows
+) -> tuple[Corrections, tuple[Source, ...], tuple[Finding, ...]]:
+    """Return the corrections with the wall factor that was measured, where the job has one."""
+    asked, given = document.table("corrections").get("wall_factor") == "measured", bool(document.table("wall_effects").values)
+    if not asked and not given:
+        return corrections, (), ()
+    if not asked:
+        raise JobError("[wall_effects] without its use", where="[corrections] wall_factor", expected='wall_factor = "measured"')
+    if frame.plane.section.shape != "round" or not given:
+        raise JobError(
+            'wall_factor = "measured"', where="[corrections] wall_factor", expected="a round section, and [wall_effects] with the readings"
+        )
+    factor, text, findings, source = _wall_effects.measured(
+        document, frame.plane, frame.layout, runs, frame.units, rows
+    )
+    return replace(corrections, wall_factor=factor, wall_factor_source=text), (source,), findings
 
 
 def _sources(frame: Frame, table: ReadingTable) -> tuple[Source, ...]:
