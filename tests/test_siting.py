@@ -7,7 +7,7 @@ import pytest
 from tests.support import jobs
 from traverse.errors import LayoutError
 from traverse.importers import load, load_setup
-from traverse.planning.siting import assess, points_wanted
+from traverse.siting import assess, points_wanted
 
 
 def setup(tmp_path, **plane):

@@ -3,6 +3,7 @@
 from collections.abc import Mapping
 from typing import Any
 
+from traverse import siting
 from traverse.checks._base import Check, Verdict, View
 from traverse.model import Plane
 from traverse.tables import load
@@ -12,6 +13,8 @@ from traverse.units import parse
 def decide(view: View) -> Verdict:
     """Compare the number of points in the layout with the least number of the job's method."""
     rule = load("site_rules")["point_count"].get(view.method.id)
+    if rule is None and view.method.count_rule:
+        return _by_count_rule(view)
     if rule is None:
         return Verdict(
             status="not applicable", observed="", message="The method sets no number of points.", criterion="none", source=""
@@ -50,6 +53,23 @@ def _least(rule: Mapping[str, Any], plane: Plane, system: str) -> tuple[int | No
                 count = int(rule["small_round" if shape == "round" else "small_rectangle"])
             return count, f" at {before:.2f} diameters before and {after:.2f} after"
     return None, "The site is below the least distances; the simplified procedure does not apply."
+
+
+def _by_count_rule(view: View) -> Verdict:
+    """Decide by the rule that the method names in the table of point counts."""
+    found = siting.least_points(view.method.count_rule, view.job)
+    assert found is not None, "a method names a rule that exists"
+    source = found.source + (" (from memory)" if found.from_memory and "memory" not in found.source else "")
+    if found.least is None:
+        return Verdict(
+            status="not evaluated", observed=f"{found.ours} points", message=f"{found.note[:1].upper()}{found.note[1:]}.", source=source,
+            criterion="depends on the shape",
+        )
+    met = found.ours >= found.least
+    return Verdict(
+        status="pass" if met else "fail", observed=f"{found.ours} points", criterion=f"at least {found.least} points ({found.note})",
+        source=source, message="" if met else "Too few points for the method.", effect="none" if met else "not estimated",
+    )
 
 
 CHECK = Check(id="point-count", title="Number of points", scope="job", decide=decide)

@@ -1,5 +1,6 @@
 """Straight lengths before and after the plane, in equivalent diameters."""
 
+from traverse import siting
 from traverse.checks._base import Check, Verdict, View
 from traverse.tables import load
 
@@ -7,6 +8,8 @@ from traverse.tables import load
 def decide(view: View) -> Verdict:
     """Compare the stated straight lengths with the rule of the job's method."""
     rule = load("site_rules")["straight_lengths"].get(view.method.id)
+    if rule is None and view.method.site_rule:
+        return _by_site_rule(view)
     if rule is None:
         return Verdict(
             status="not applicable", observed="", message="The method sets no straight lengths.", criterion="none", source=""
@@ -35,6 +38,30 @@ def decide(view: View) -> Verdict:
         status="fail", observed=observed, criterion=criterion, source=rule["source"],
         message="Take more points, choose another plane, or have the deviation accepted.",
     )
+
+
+def _by_site_rule(view: View) -> Verdict:
+    """Decide by the rule that the method names in the table of site rules."""
+    found = siting.straight_lengths(view.method.site_rule, view.job)
+    assert found is not None, "a method names a rule that exists, of any size"
+    source = found.source + (" (from memory)" if found.from_memory and "memory" not in found.source else "")
+    criterion = f"{found.wanted} in diameters; diameter = {found.diameter_name}"
+    if found.verdict == "not stated":
+        return Verdict(
+            status="not evaluated", observed="", criterion=criterion, source=source,
+            message="[plane] upstream and downstream are not both stated.",
+        )
+    observed = f"{_number(found.before)} before, {_number(found.after)} after"
+    met = found.verdict != "not met"
+    return Verdict(
+        status="pass" if met else "fail", observed=observed, criterion=criterion, source=source,
+        message=f"{found.allowed[:1].upper()}{found.allowed[1:]}." if found.allowed else "",
+        effect="none" if found.verdict == "met" else "not estimated",
+    )
+
+
+def _number(value: float | None) -> str:
+    return "?" if value is None else f"{value:.2f}"
 
 
 CHECK = Check(id="straight-lengths", title="Straight lengths", scope="job", decide=decide)

@@ -57,6 +57,8 @@ class Method:
         The nearest a point may lie to the wall of a round duct; 0 where the method has no such rule.
     checks : tuple of str
         The checks whose failure counts against this method.
+    site_rule, count_rule : str
+        The rules for straight lengths and for the number of points, in the table of site rules, that hold for the method.
     notes : tuple of str
         What the reader of a report must know, such as which numbers are from memory.
     """
@@ -73,6 +75,8 @@ class Method:
     reference: Mapping[str, tuple[str, str]] = field(default_factory=lambda: MappingProxyType({}))
     wall_distance: Callable[[float, str], float] = lambda diameter, system: 0.0  # noqa: ARG005
     checks: tuple[str, ...] = ()
+    site_rule: str = ""
+    count_rule: str = ""
     notes: tuple[str, ...] = ()
 
 

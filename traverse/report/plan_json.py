@@ -9,9 +9,9 @@ from typing import Any
 from traverse._version import __version__
 from traverse.planning import Clearance, Plan, Rounding, site
 from traverse.planning.recognised import recognised
-from traverse.planning.siting import assess, points_wanted
 from traverse.report import cautions
 from traverse.report.plan_text import sixteenths
+from traverse.siting import assess, points_wanted
 
 FORMAT, VERSION = "traverse plan", 1
 # The names of the two roundings in the JSON form.

@@ -5,8 +5,8 @@ from __future__ import annotations
 import textwrap
 
 from traverse.model import Setup
-from traverse.planning.siting import PointCount, SiteVerdict, assess, points_wanted
 from traverse.report.text import table
+from traverse.siting import PointCount, SiteVerdict, assess, points_wanted
 
 WIDTH = 110
 

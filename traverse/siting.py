@@ -1,4 +1,4 @@
-"""The place of the plane and the number of points against every standard's rule at once."""
+"""The place of the plane and the number of points against the standards' rules: all at once for a plan, one for a check."""
 
 from __future__ import annotations
 
@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from typing import Any, Literal
 
 from traverse import tables
-from traverse.model import Section, Setup
+from traverse.model import Job, Section, Setup
 from traverse.units import parse
 
 SLACK = 1.0 - 1e-9
@@ -69,6 +69,18 @@ def _fan_outlet(setup: Setup) -> tuple[SiteVerdict, ...]:
     return (_verdict(rule, setup),)
 
 
+def straight_lengths(rule: str, setup: Setup | Job) -> SiteVerdict | None:
+    """Return what one rule says of the straight lengths, None where there is no such rule or the section is not of its size."""
+    found = next((one for one in tables.load("site_rules")["site"] if one["rule"] == rule), None)
+    return None if found is None or not _within(setup.plane.section, found) else _verdict(found, setup)
+
+
+def least_points(rule: str, setup: Setup | Job) -> PointCount | None:
+    """Return the least number of points by one rule that goes by the size of the section, None where there is no such rule."""
+    found = next((one for one in tables.load("site_rules")["count"] if one["rule"] == rule), None)
+    return None if found is None else _count(found, setup)
+
+
 def _within(section: Section, rule: Mapping[str, Any]) -> bool:
     """Return whether the rule is for ducts of this size."""
     if "narrowest" not in rule:
@@ -77,7 +89,7 @@ def _within(section: Section, rule: Mapping[str, Any]) -> bool:
     return low <= section.hydraulic_diameter < high
 
 
-def _verdict(rule: Mapping[str, Any], setup: Setup) -> SiteVerdict:
+def _verdict(rule: Mapping[str, Any], setup: Setup | Job) -> SiteVerdict:
     section, plane = setup.plane.section, setup.plane
     diameter, name = _diameter(rule["diameter"], section)
     before, after = (None if length is None else length.value / diameter for length in (plane.upstream, plane.downstream))
@@ -124,17 +136,24 @@ def _all(lengths: Sequence[float | None], wanted: Sequence[float | None]) -> boo
 
 def points_wanted(setup: Setup) -> tuple[PointCount, ...]:
     """Return the least number of points by every rule, beside the number of the layout; a centre read on several lines is one."""
+    ours, _ = places(setup)
+    return (*_method_1(setup, ours), *(_count(rule, setup) for rule in tables.load("site_rules")["count"]))
+
+
+def places(setup: Setup | Job) -> tuple[int, bool]:
+    """Return the number of points of the layout, a centre read on several lines being one, and whether there is a centre."""
     section, layout = setup.plane.section, setup.layout
     centre = sum(bool(math.hypot(x, y) < 1e-9 * section.width) for x, y in zip(layout.x, layout.y, strict=True))
-    ours = layout.size - max(centre - 1, 0)
-    found = [*_method_1(setup, ours)]
-    for rule in tables.load("site_rules")["count"]:
-        least, note = _least(rule, section)
-        own = ours - (centre > 0) if rule.get("without_centre") else ours
-        found.append(PointCount(
-            rule=rule["rule"], title=rule["title"], least=least, ours=own, note=note, source=rule["source"], from_memory=rule["memory"],
-        ))
-    return tuple(found)
+    return layout.size - max(centre - 1, 0), centre > 0
+
+
+def _count(rule: Mapping[str, Any], setup: Setup | Job) -> PointCount:
+    least, note = _least(rule, setup.plane.section)
+    ours, centre = places(setup)
+    return PointCount(
+        rule=rule["rule"], title=rule["title"], least=least, ours=ours - (centre and bool(rule.get("without_centre"))), note=note,
+        source=rule["source"], from_memory=rule["memory"],
+    )
 
 
 def _method_1(setup: Setup, ours: int) -> list[PointCount]:
