@@ -89,3 +89,17 @@ def test_a_design_velocity_is_a_design_flow_to_the_reduction(tmp_path):
     done = run("reduce", jobs.write(tmp_path, {"design": {"velocity": "10 m/s"}, "gauge": {"range": "250 Pa"}}), "--json", "-")
     # 10 m/s in a circle of 1 m.
     assert json.loads(done.stdout)["design"]["actual_flow"] == pytest.approx(7.853981634)
+
+
+def test_the_rule_of_points_of_ones_own_is_named(tmp_path):
+    from click.testing import CliRunner
+
+    from tests.support import jobs
+    from traverse.cli import main
+
+    layout = {"rule": "custom", "lines": 2, "points": None, "depths": ["32 mm", "135 mm", "321 mm", "679 mm", "865 mm", "968 mm"]}
+    shown = CliRunner().invoke(main, ["plan", str(jobs.write(tmp_path, {"layout": layout}))])
+    assert "Looks like   Log-linear, 6 points" in shown.output and "lines A, B" in shown.output
+    layout["depths"] = ["100 mm", "300 mm", "700 mm", "950 mm"]
+    shown = CliRunner().invoke(main, ["plan", str(jobs.write(tmp_path, {"layout": layout}))])
+    assert "Looks like   no rule that is known here" in shown.output

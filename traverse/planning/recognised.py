@@ -49,6 +49,8 @@ def words(match: Match, labels: tuple[str, ...]) -> str:
     worst = max(regular, key=lambda k: abs(match.deviations[k]))
     what = f"{match.title}, {match.points} points"
     off = f"{1000 * match.deviations[worst]:+.1f} mm at {labels[worst]}"
+    if not match.fits and match.largest > 20.0 * match.tolerance:
+        return "no rule that is known here"
     if not match.fits:
         return f"no known rule; nearest is {what}, off by up to {off}"
     return f"{what} (off by up to {off})" + (f"; {match.note}" if match.note else "")
