@@ -46,6 +46,8 @@ def line_length(section: Section, layout: Layout, index: list[int]) -> float | N
 def words(match: Match, labels: tuple[str, ...]) -> str:
     """Return what a match says, with the mark that is furthest off."""
     regular = [k for k in range(len(match.deviations)) if k not in match.slips and math.isfinite(match.deviations[k])]
+    if not regular:
+        return "no rule that is known here"
     worst = max(regular, key=lambda k: abs(match.deviations[k]))
     what = f"{match.title}, {match.points} points"
     off = f"{1000 * match.deviations[worst]:+.1f} mm at {labels[worst]}"
