@@ -18,9 +18,11 @@ NAMES = {
     "ft2": "foot**2", "in2": "inch**2", "ft/s": "foot/second", "ft/min": "foot/minute", "km/h": "kilometer/hour", "m3/h": "meter**3/hour",
     "L/s": "liter/second", "cfm": "foot**3/minute", "lb/h": "pound/hour", "lb/ft3": "pound/foot**3", "kg/h": "kilogram/hour",
     "lb/lbmol": "gram/mole", "deg": "degree", "ft3/h": "foot**3/hour", "m3/min": "meter**3/minute", "gr/lb": "grain/pound",
+    "g": "gram", "ml": "milliliter", "L": "liter", "ft3": "foot**3",
 }
 SI = {"pressure": "pascal", "length": "meter", "area": "meter**2", "velocity": "meter/second", "flow": "meter**3/second",
-      "mass flow": "kilogram/second", "density": "kilogram/meter**3", "molar mass": "gram/mole", "angle": "radian", "humidity ratio": "dimensionless"}
+      "mass flow": "kilogram/second", "density": "kilogram/meter**3", "molar mass": "gram/mole", "angle": "radian", "humidity ratio": "dimensionless",
+      "mass": "kilogram", "volume": "meter**3"}
 # pint's mercury is 13.5951 kg/L rounded to 13.5951; its water columns are rounded constants: 1e-5 and 3e-6.
 LOOSE = {"inHg": 1e-6, "mmHg": 1e-6, "inH2O@60F": 1e-6, "inHg@60F": 1e-5}
 

@@ -16,10 +16,29 @@ import numpy as np
 import numpy.typing as npt
 
 from traverse.methods import Constants
-from traverse.physics import gas, moist_air, pitot, sections
+from traverse.physics import combustion, gas, mixture, moist_air, pitot, sections, stack_moisture
 from traverse.units import convert
 
 Array = npt.NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class StackSetting:
+    """What selects the equations of a stack gas that is not stated by its dry analysis and one humidity.
+
+    ``train`` is 'mass' or 'volume' (of the condensate); ``fuel_from`` is 'oxygen' or 'excess_air', and ``fuel_composition`` says
+    that the dry composition follows from the fuel too; ``species`` are the stated gases of a mixture without water, ``rest`` the
+    one that fills up.
+    """
+
+    psychrometer: Literal["", "energy-balance", "carrier", "ferrel"] = ""
+    train: Literal["", "mass", "volume"] = ""
+    approximation: bool = False
+    fuel: combustion.Atoms | None = None
+    fuel_from: Literal["oxygen", "excess_air"] = "oxygen"
+    fuel_composition: bool = True
+    species: tuple[str, ...] = ()
+    rest: str = ""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -30,7 +49,7 @@ class Setting:
     """
 
     shape: str
-    gas_kind: Literal["air", "flue-gas", "given"]
+    gas_kind: Literal["air", "flue-gas", "given", "mixture"]
     humidity: str
     density_given: Literal["", "at plane", "at conditions"] = ""
     ratio_of_specific_heats: float | None = None
@@ -40,6 +59,7 @@ class Setting:
     constants: Constants | None = None
     reference: tuple[str, float, float] | None = None
     dimensions: tuple[str, ...] = field(default=("diameter",))
+    stack: StackSetting | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -58,8 +78,8 @@ def evaluate(inputs: Mapping[str, Array], setting: Setting) -> Flow:
     inputs : mapping of str to array, shape (..., n) or (..., 1)
         ``differential_pressure`` [Pa], ``root_shift`` [Pa^0.5], ``temperature`` [K], ``static`` [Pa gauge],
         ``barometric`` [Pa], ``yaw`` [rad], ``weight``, ``coefficient``, ``water`` (in the form ``setting.humidity``),
-        ``moisture_shift``, the dry fractions, ``density`` [kg/m3], ``density_temperature`` [K], ``density_pressure``
-        [Pa], ``molar_mass`` [g/mol], ``point_factor``, ``wall_factor``, ``profile_factor``, and the dimensions of the
+        ``moisture_shift``, the dry fractions (wet ones of a mixture), ``density`` [kg/m3], ``density_temperature`` [K],
+        ``density_pressure`` [Pa], ``molar_mass`` [g/mol], ``point_factor``, ``wall_factor``, ``profile_factor``, and the dimensions of the
         section by name [m].
     setting : Setting
         Which equations.
@@ -69,6 +89,7 @@ def evaluate(inputs: Mapping[str, Array], setting: Setting) -> Flow:
     Flow
         Quantities in SI; NaN where the inputs are impossible or a quantity does not exist.
     """
+    inputs = resolved(inputs, setting)
     weight = inputs["weight"]
     pressure = inputs["barometric"] + inputs["static"]
     mean = {name: _mean(weight, inputs[name]) for name in ("temperature", "static")}
@@ -79,6 +100,52 @@ def evaluate(inputs: Mapping[str, Array], setting: Setting) -> Flow:
     flow = step(inputs, setting, matter, root, mean)
     size = {name: inputs[name] for name in setting.dimensions}
     return _totals(flow, inputs, setting, matter, root, mean, size)
+
+
+def resolved(inputs: Mapping[str, Array], setting: Setting) -> Mapping[str, Array]:
+    """Return the inputs with what follows from a fuel or a sampling train put where the rest of the chain looks for it.
+
+    ``oxygen``, ``carbon_dioxide``, ``carbon_monoxide`` and ``sulfur_dioxide`` of a fuel's gas; ``water`` as the mole fraction
+    that the fuel or the train gives, before any comparison with saturation. Without either the inputs are returned as they are.
+    """
+    stack = setting.stack
+    if stack is None or (stack.fuel is None and not stack.train):
+        return inputs
+    found = dict(inputs)
+    if stack.fuel is not None:
+        balance = combustion.from_oxygen if stack.fuel_from == "oxygen" else combustion.from_excess_air
+        burnt = balance(stack.fuel, inputs[stack.fuel_from], inputs["carbon_monoxide"], inputs["air_humidity_ratio"])
+        if stack.fuel_composition:
+            found |= {name: burnt[name] for name in ("oxygen", "carbon_dioxide", "sulfur_dioxide")}
+        if setting.humidity == "combustion":
+            found["water"] = burnt["moisture"]
+    if stack.train:
+        found["water"] = collected(inputs, setting)["moisture"]
+    return found
+
+
+def collected(inputs: Mapping[str, Array], setting: Setting) -> dict[str, Array]:
+    """Return the water, the dry gas and the moisture of a sampling train, by the method's printed constants where it has them."""
+    own, stack = setting.constants, setting.stack
+    assert stack is not None and stack.train, "there is a train"
+    system: stack_moisture.System = "modern" if own is None else "us" if own.temperature == "degF" else "si"
+    metered = {**inputs, "meter_barometric": inputs.get("meter_barometric", inputs["barometric"])}
+    return stack_moisture.train(metered, system, by_volume=stack.train == "volume", approximation=stack.approximation)
+
+
+def _moisture(inputs: Mapping[str, Array], setting: Setting, temperature: Array, pressure: Array) -> Array:
+    """Return the mole fraction of water from whichever humidity was stated."""
+    stack = setting.stack
+    if stack is not None and stack.train:
+        return stack_moisture.capped(inputs["water"], temperature, pressure)
+    if stack is not None and stack.psychrometer:
+        middle = (inputs["water"] + temperature) / 2.0
+        found = stack_moisture.wet_bulb_fraction(
+            stack.psychrometer, inputs["water"], temperature, pressure, mixture.heat_capacity(_dry_species(inputs, setting), middle)
+        )
+        return moist_air.mole_fraction("moisture", found, temperature, pressure)
+    form = "moisture" if setting.humidity == "combustion" else setting.humidity
+    return moist_air.mole_fraction(form, inputs["water"], temperature, pressure)
 
 
 def roots(differential_pressure: Array, *, signed: bool) -> Array:
@@ -96,8 +163,7 @@ def composition(inputs: Mapping[str, Array], setting: Setting, temperature: Arra
     if setting.humidity == "none":
         moisture = np.full(np.shape(temperature), np.nan)
     else:
-        moisture = moist_air.mole_fraction(setting.humidity, inputs["water"], temperature, pressure)
-        moisture = moisture + inputs["moisture_shift"]
+        moisture = _moisture(inputs, setting, temperature, pressure) + inputs["moisture_shift"]
     own = setting.constants
     water = own.molar_mass_water if own else gas.MOLAR_MASS["H2O"]
     parts = tuple(inputs[name] for name in ("oxygen", "carbon_dioxide", "carbon_monoxide", "sulfur_dioxide"))
@@ -110,14 +176,29 @@ def composition(inputs: Mapping[str, Array], setting: Setting, temperature: Arra
         return {"moisture": moisture, "molar_mass": wet, "molar_mass_dry": (wet - water * moisture) / (1.0 - moisture)}
     if setting.gas_kind == "air":
         dry = np.full(np.shape(temperature), own.molar_mass_air if own else gas.MOLAR_MASS["air"])
+    elif setting.gas_kind == "mixture":
+        dry = mixture.dry_molar_mass(_dry_species(inputs, setting))
     else:
         dry = gas.epa_dry_molar_mass(*parts) if own else gas.dry_molar_mass(*parts)
     wet = gas.wet_molar_mass(dry, moisture, water)
     return {"moisture": moisture, "molar_mass": wet, "molar_mass_dry": dry}
 
 
+def _dry_species(inputs: Mapping[str, Array], setting: Setting) -> dict[str, Array]:
+    """Return the mole fractions of the dry gas by symbol, for a mixture or a flue gas."""
+    if setting.gas_kind == "mixture":
+        assert setting.stack is not None, "a mixture names its species"
+        return mixture.dry_fractions(inputs, setting.stack.species, setting.stack.rest, inputs["water"])
+    parts = gas.wet_composition(
+        inputs["oxygen"], inputs["carbon_dioxide"], inputs["carbon_monoxide"], inputs["sulfur_dioxide"], 0.0
+    )
+    return {name: part for name, part in parts.items() if name != "H2O"}
+
+
 def _species(inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array]) -> dict[str, Array]:
     moisture = np.where(np.isfinite(matter["moisture"]), matter["moisture"], 0.0)
+    if setting.gas_kind == "mixture":
+        return mixture.wet(_dry_species(inputs, setting), moisture)
     if setting.gas_kind == "flue-gas":
         return gas.wet_composition(
             inputs["oxygen"], inputs["carbon_dioxide"], inputs["carbon_monoxide"], inputs["sulfur_dioxide"], moisture
@@ -196,7 +277,7 @@ def _totals(
     density = np.where(actual == 0.0, still, mass / np.where(actual == 0.0, 1.0, actual))
     temperature = mean["temperature"]
     species = _species(inputs, setting, matter)
-    viscosity = gas.viscosity(species, temperature) if setting.gas_kind == "flue-gas" else gas.air_viscosity(temperature)
+    viscosity = gas.viscosity(species, temperature) if setting.gas_kind in {"flue-gas", "mixture"} else gas.air_viscosity(temperature)
     quantities = {
         "area": area,
         "barometric_pressure": inputs["barometric"][..., 0],
@@ -232,7 +313,7 @@ def ratio_of_specific_heats(
     """Return the ratio of specific heats of the run: as stated, 1.4 for air and given gas, else from the composition."""
     if setting.ratio_of_specific_heats is not None:
         return setting.ratio_of_specific_heats
-    if setting.gas_kind != "flue-gas":
+    if setting.gas_kind not in {"flue-gas", "mixture"}:
         return 1.4
     return gas.ratio_of_specific_heats(_species(inputs, setting, matter), temperature)
 

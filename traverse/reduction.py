@@ -16,7 +16,7 @@ from traverse.methods import Method
 from traverse.model import UNREAD, Array, Finding, Job, Reference, Run
 from traverse.quantities import BY_NAME, NAMES
 from traverse.result import DesignComparison, Measured, Reduction, RunResult, Spread
-from traverse.treatment import MISSING_RULES, Treated, inputs, refuse_impossible, setting, treat
+from traverse.treatment import MISSING_RULES, Treated, derived_gas, inputs, matter_findings, refuse_impossible, setting, treat
 from traverse.uncertainty import directions, propagation
 from traverse.uncertainty.runs import of_mean
 from traverse.units import parse
@@ -92,12 +92,13 @@ def _run(job: Job, run: Run, method: Method) -> RunResult:
     quantities, notes = _quantities(job, method, flow, moved, rows)
     treatments, findings = _negative(job, run, method)
     missing, missing_findings = _missing(job, run, method)
-    findings += missing_findings + _integration(run, treated)
+    findings += missing_findings + _integration(run, treated) + matter_findings(run, arrays, equations)
     result = RunResult(
         run=run, quantities=quantities, notes=notes, treated=treated, velocity=_point(flow.points["velocity"], job),
         density=_point(flow.points["density"], job),
         budget={name: propagation.budget(rows, moved, name) for name in flow.quantities} if rows else {},
         checks=(), treatments=treatments, missing=missing, exact=_exact(job, run, method, treated, signed), findings=findings,
+        gas=derived_gas(run, arrays, equations),
     )
     return replace(result, checks=checks.over_run(job, method, result))
 

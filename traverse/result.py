@@ -5,7 +5,7 @@ from __future__ import annotations
 import json
 import math
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Any, Literal
 
 from traverse.model import NULL, Array, Finding, Job, Run
@@ -109,6 +109,7 @@ class RunResult:
     missing: Mapping[str, Mapping[str, float]]
     exact: Mapping[str, float]
     findings: tuple[Finding, ...] = ()
+    gas: Mapping[str, float] = field(default_factory=dict)
 
     def value(self, name: str) -> float:
         """Return a quantity's value; NaN where the job cannot give it."""
@@ -205,6 +206,7 @@ class Reduction:
             "missing_treatments": {rule: dict(values) for rule, values in result.missing.items()},
             "exact_physics": dict(result.exact),
             "findings": [{"level": f.level, "topic": f.topic, "message": f.message} for f in result.findings],
+            **({"gas": dict(result.gas)} if result.gas else {}),
         }
 
     def to_json(self, indent: int | None = 2) -> str:

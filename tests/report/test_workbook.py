@@ -28,6 +28,14 @@ MISSING = jobs.READINGS.replace("A,2,60", "A,2,obstructed").replace("B,3,63", "B
 OVAL = "line,point,differential_pressure [Pa]\n" + "".join(f"{n},{k},{40 + 3 * k}\n" for n in "ABCDE" for k in (1, 2))
 TWENTY_SIX = "line,point,differential_pressure [Pa]\n" + "".join(
     f"{n},{k},{40 + 2 * k}\n" for n, count in zip("ABCD", (7, 6, 6, 7), strict=True) for k in range(1, count + 1))
+TRAIN = {"condensed": "85.3 ml", "silica_gel": "6.2 g", "meter_volume": "1.102 m3", "meter_temperature": "24 degC", "meter_factor": 0.998,
+         "orifice_pressure": "45 mmH2O"}
+BY_TRAIN = FLUE | {"moisture": None, "moisture_train": TRAIN}
+BURNT = {"kind": "flue-gas", "density": None, "air_humidity_ratio": "8 g/kg"}
+ULTIMATE = {"carbon": "64 %", "hydrogen": "4.5 %", "oxygen": "7.5 %", "nitrogen": "1.3 %", "sulfur": "1.7 %", "water": "9 %", "ash": "12 %"}
+BULBS = FLUE | {"moisture": None, "wet_bulb": "58 degC"}
+MIXED = {"kind": "mixture", "density": None, "components": {"methane": "12 %", "hydrogen": "3 %", "ammonia": "2 %", "nitric_oxide": "1 %",
+                                                           "water": "9 %", "rest": "air"}}
 # Every branch of the working: gas, humidity, method, rules for readings, corrections, reference, uncertainty.
 VARIANTS = {
     "given_density": ({}, jobs.READINGS),
@@ -77,6 +85,25 @@ VARIANTS = {
                  "layout": {"rule": "custom", "points": None, "depths": ["0.1 m", "0.4 m", "0.7 m", "0.9 m"]}}, jobs.READINGS),
     "field": ({"readings": {"missing": "field"}, "uncertainty": UNCERTAIN}, MISSING),
     "general": ({"layout": {"rule": "general", "points": 3}}, jobs.READINGS.replace("A,4,48\n", "").replace("B,4,52\n", "")),
+    "train_modern": ({"gas": BY_TRAIN, "conditions": HOT, "uncertainty": UNCERTAIN | {"condensed": "±1 ml", "meter_volume": "1 %", "moisture": "0.2 %"}}, jobs.READINGS),
+    "train_us": ({"job": {"method": "epa-2", "units": "us"}, "gas": BY_TRAIN, "conditions": HOT}, jobs.READINGS),
+    "train_si": ({"job": {"method": "epa-2"}, "conditions": HOT, "gas": BY_TRAIN | {"moisture_train": {
+        "condensed": "85.3 g", "meter_volume": "38.9 ft3", "meter_temperature": "75 degF", "meter_factor": 1.01, "meter_pressure": "750 mmHg",
+        "approximation": True}}}, jobs.READINGS),
+    "train_capped": ({"gas": BY_TRAIN, "conditions": {"temperature": "38 degC"}}, jobs.READINGS),
+    "train_hot": ({"gas": BY_TRAIN | {"moisture_train": TRAIN | {"barometric": "99 kPa"}}, "conditions": {"temperature": "250 degC"}}, jobs.READINGS),
+    "fuel_gas": ({"gas": BURNT | {"fuel": "natural-gas", "oxygen": "4 %", "carbon_monoxide": "300 ppm"}, "conditions": HOT, "reference": REFERENCE,
+                  "uncertainty": UNCERTAIN | {"oxygen": "0.2 %", "air_humidity_ratio": "1 g/kg", "moisture": "0.5 %"}}, jobs.READINGS),
+    "fuel_coal": ({"job": {"method": "epa-2", "units": "us"}, "gas": BURNT | {"fuel": ULTIMATE, "excess_air": "30 %"}, "conditions": HOT}, jobs.READINGS),
+    "fuel_measured": ({"gas": BURNT | {"fuel": {"type": "wood", "water": "20 %"}, "oxygen": "9 %", "carbon_dioxide": "11.4 %"}, "conditions": HOT}, jobs.READINGS),
+    "fuel_and_moisture": ({"gas": FLUE | {"fuel": "propane", "carbon_dioxide": None, "moisture": "9 %"}, "conditions": HOT}, jobs.READINGS),
+    "bulb_balance": ({"gas": BULBS | {"psychrometer": "energy-balance"}, "conditions": HOT, "uncertainty": UNCERTAIN | {"wet_bulb": "0.5 K"}}, jobs.READINGS),
+    "bulb_frost": ({"gas": BULBS | {"psychrometer": "energy-balance", "wet_bulb": "-4 degC"}, "conditions": {"temperature": "-2 degC"}}, jobs.READINGS),
+    "bulb_carrier": ({"job": {"method": "epa-2"}, "gas": BULBS | {"psychrometer": "carrier"}, "conditions": HOT}, jobs.READINGS),
+    "bulb_ferrel": ({"gas": BULBS | {"psychrometer": "ferrel", "fuel": "oil", "carbon_dioxide": None}, "conditions": HOT}, jobs.READINGS),
+    "mixture": ({"gas": MIXED, "conditions": HOT, "reference": REFERENCE, "uncertainty": UNCERTAIN | {"methane": "0.5 %", "moisture": "1 %"}}, jobs.READINGS),
+    "mixture_epa": ({"job": {"method": "epa-2"}, "conditions": HOT, "gas": MIXED | {"components": {"nitrogen": "70 %", "helium": "10 %", "water": "5 %", "argon": "15 %"}}}, jobs.READINGS),
+    "mixture_dry": ({"gas": MIXED | {"components": {"carbon_dioxide": "40 %"}, "rest": "nitrogen"}, "conditions": HOT}, jobs.READINGS),
     "total_and_static": ({}, "line,point,total_pressure [Pa],static [Pa]\n" + "".join(f"{n},{k},{250 + k},{200}\n" for n in "AB" for k in (1, 2, 3, 4))),
 }
 

@@ -6,21 +6,23 @@ from dataclasses import replace
 from typing import Literal, cast
 
 from traverse.errors import JobError
+from traverse.importers import _stack_gas
 from traverse.importers._schema import Table
 from traverse.model import COMPONENTS, Finding, Gas, Humidity
 from traverse.units import Stated
 
 HUMIDITY: dict[str, tuple[str, ...]] = {
     "air": ("relative_humidity", "wet_bulb", "dew_point", "humidity_ratio", "moisture", "dry"),
-    "flue-gas": ("moisture", "wet_bulb", "dew_point", "saturated", "dry"),
-    "given": ("moisture",),
+    "flue-gas": ("moisture", "wet_bulb", "dew_point", "saturated", "dry", "moisture_train"),
+    "given": ("moisture",), "mixture": (),
 }
 _ALL_FORMS = tuple(dict.fromkeys(form for forms in HUMIDITY.values() for form in forms))
 _FLAGS = ("dry", "saturated")
 _OWN: dict[str, tuple[str, ...]] = {
-    "air": (), "flue-gas": COMPONENTS, "given": ("density", "temperature", "pressure", "molar_mass"),
+    "air": (), "flue-gas": (*COMPONENTS, "psychrometer", "fuel", "excess_air", "air_humidity_ratio"),
+    "given": ("density", "temperature", "pressure", "molar_mass"), "mixture": ("components", "rest"),
 }
-Kind = Literal["air", "flue-gas", "given"]
+Kind = Literal["air", "flue-gas", "given", "mixture"]
 
 
 def merge(base: Table, over: Table | None) -> Table:
@@ -31,11 +33,16 @@ def merge(base: Table, over: Table | None) -> Table:
     if "kind" in over and over.text("kind") != base.text("kind"):
         kept = {}
     if any(form in over for form in _ALL_FORMS):
-        kept = {key: value for key, value in kept.items() if key not in _ALL_FORMS}
-    for one, other in (("density", "molar_mass"), ("molar_mass", "density")):
+        kept = {key: value for key, value in kept.items() if key not in _ALL_FORMS and (key != "psychrometer" or "wet_bulb" in over)}
+    for one, other in (("density", "molar_mass"), ("molar_mass", "density"), ("oxygen", "excess_air"), ("excess_air", "oxygen")):
         if one in over and other not in over:
             kept.pop(other, None)
-    return Table(over.name, {**kept, **over.values})
+    own = dict(over.values)
+    if "moisture_train" in base and "moisture_train" in over:
+        own["moisture_train"] = _stack_gas.merged_train(base.get("moisture_train"), over.get("moisture_train"))
+    if isinstance(kept.get("components"), dict) and isinstance(own.get("components"), dict):
+        own["components"] = kept["components"] | own["components"]
+    return Table(over.name, {**kept, **own})
 
 
 def build(table: Table) -> tuple[Gas, tuple[Finding, ...]]:
@@ -46,7 +53,7 @@ def build(table: Table) -> tuple[Gas, tuple[Finding, ...]]:
     JobError
         If the kind, the humidity or the analysis is missing, stated twice, or impossible.
     """
-    table.need("kind", '"air", "flue-gas" or "given"', 'for example kind = "air" with relative_humidity = "45 %"')
+    table.need("kind", '"air", "flue-gas", "given" or "mixture"', 'for example kind = "air" with relative_humidity = "45 %"')
     kind = cast("Kind", table.text("kind"))
     for key in table.values:
         if key not in (*HUMIDITY[kind], *_OWN[kind], "kind", "ratio_of_specific_heats"):
@@ -63,7 +70,33 @@ def build(table: Table) -> tuple[Gas, tuple[Finding, ...]]:
     gas = Gas(kind=kind, humidity=humidity, water=water, ratio_of_specific_heats=ratio)
     if kind == "air":
         return gas, ()
-    return _flue_gas(table, gas) if kind == "flue-gas" else _given(table, gas)
+    if kind == "mixture":
+        return _stack_gas.mixture(table, gas)
+    return _stack(table, gas) if kind == "flue-gas" else _given(table, gas)
+
+
+def _stack(table: Table, gas: Gas) -> tuple[Gas, tuple[Finding, ...]]:
+    """Return a flue gas with what was measured in place of its moisture and its composition: train, psychrometer, fuel."""
+    if gas.humidity == "moisture_train":
+        gas = replace(gas, train=_stack_gas.train(f"{table.name} moisture_train", table.get("moisture_train")))
+    if "psychrometer" in table:
+        if gas.humidity != "wet_bulb":
+            raise JobError("psychrometer without wet_bulb", where=table.where("psychrometer"), expected="a wet_bulb that it reads")
+        gas = replace(gas, psychrometer=table.text("psychrometer") or "")
+    if "fuel" not in table:
+        for key in ("excess_air", "air_humidity_ratio"):
+            if key in table:
+                raise JobError(f"{key} without a fuel", where=table.where(key), expected='a fuel, such as fuel = "natural-gas"')
+        return _flue_gas(table, gas)
+    fuel, findings = _stack_gas.fuel(table)
+    gas = replace(gas, fuel=fuel)
+    if fuel.measured or "oxygen" in table:
+        gas, more = _flue_gas(table, gas)
+        findings += more if fuel.measured else ()
+    elif "carbon_monoxide" in table:
+        gas = _flue_gas(table, gas)[0]
+    _stack_gas.refuse_no_combustion(table, gas)
+    return gas, findings
 
 
 def _humidity(table: Table, kind: Kind) -> tuple[Humidity, Stated | None]:
@@ -79,12 +112,16 @@ def _humidity(table: Table, kind: Kind) -> tuple[Humidity, Stated | None]:
     if not forms:
         if kind == "given":
             return "none", None
+        if kind == "mixture":
+            return "dry", None
+        if kind == "flue-gas" and "fuel" in table:
+            return "combustion", None
         raise JobError(
             "the humidity of the gas is not stated", where=table.name, expected=f"exactly one of {shown}",
             how="dry = true says that there is no water in it",
         )
     form = forms[0]
-    if form in _FLAGS:
+    if form in _FLAGS or form == "moisture_train":
         return cast("Humidity", form), None
     water = table.stated(form)
     assert water is not None

@@ -14,7 +14,8 @@ from typing import Any, Literal
 
 from traverse.errors import JobError, UnitError, nearest
 from traverse.importers._schema import plain_number
-from traverse.model import COMPONENTS, Component, Distribution, Run, Uncertainties
+from traverse.model import COMPONENTS, Component, Distribution, Gas, Run, Uncertainties
+from traverse.physics.mixture import SPECIES
 from traverse.units import unit
 
 PARTS = ("calibration", "zero", "resolution", "repeatability")
@@ -46,7 +47,14 @@ INPUTS: Mapping[str, Input] = {
     "molar_mass": Input("molar mass", "relative"), "dimensions": Input("length", "relative"),
     "position": Input("length", "refused", single=False), "yaw": Input("angle", "refused", single=False),
     "layout": Input("number", "relative"),
+    **{name: Input("fraction", "points") for name in SPECIES if name not in (*COMPONENTS, "water")},
+    "excess_air": Input("fraction", "points"), "air_humidity_ratio": Input("humidity ratio", "relative"),
+    "condensed": Input("mass", "relative"), "silica_gel": Input("mass", "relative"), "meter_volume": Input("volume", "relative"),
+    "meter_temperature": Input("temperature", "relative"), "meter_pressure": Input("pressure", "relative"),
+    "orifice_pressure": Input("pressure", "relative"), "meter_factor": Input("number", "relative"),
 }
+_VOLUME = Input("volume", "relative")
+_TRAIN = ("condensed", "silica_gel", "meter_volume", "meter_temperature", "meter_pressure", "orifice_pressure", "meter_factor")
 _HUMIDITY = ("moisture", "relative_humidity", "wet_bulb", "dew_point", "humidity_ratio")
 _SPLIT = re.compile(r"(?<![0-9][eE])\+")
 _TERM = re.compile(
@@ -98,8 +106,18 @@ def build(table: Mapping[str, Any] | None, runs: Sequence[Run]) -> Uncertainties
         if name == "layout":
             layout = "stated"
         _refuse_absent(name, where, runs)
-        components.extend(_components(name, stated, where, single=_is_single(name, runs)))
+        components.extend(_components(name, stated, where, _input(name, where, runs), single=_is_single(name, runs)))
     return Uncertainties(coverage=_coverage(table), components=tuple(components), layout=layout)
+
+
+def _input(name: str, where: str, runs: Sequence[Run]) -> Input:
+    """Return the kind of an input; a condensate is a mass or a volume, as the job states it."""
+    if name != "condensed":
+        return INPUTS[name]
+    volumes = {run.gas.train.by_volume for run in runs if run.gas.train is not None}
+    if len(volumes) > 1:
+        raise JobError("the runs state the condensate by mass and by volume", where=where, expected="one kind for all runs")
+    return _VOLUME if True in volumes else INPUTS[name]
 
 
 def _is_single(name: str, runs: Sequence[Run]) -> bool:
@@ -122,16 +140,27 @@ def _refuse_absent(name: str, where: str, runs: Sequence[Run]) -> None:
     """Raise unless every run has the input: an uncertainty of something that is not there acts on nothing."""
     for run in runs:
         gas = run.gas
+        if name == "moisture" and gas.humidity in {"moisture_train", "combustion"}:
+            continue
         if name in _HUMIDITY and gas.humidity != name:
             held = gas.humidity.replace("_", " ") if gas.humidity != "none" else "no humidity at all"
             raise JobError(f"run {run.name} states {held}, not {name}", where=where, expected="an input the job has")
-        if name in COMPONENTS and name not in gas.composition:
+        if (name in SPECIES and name not in gas.composition) or _lacks(name, gas):
             raise JobError(f"run {run.name} states no {name}", where=where, expected="an input the job has")
         if name in {"density", "molar_mass"} and getattr(gas, name) is None:
             raise JobError(f"run {run.name} states no {name}", where=where, expected="an input the job has")
 
 
-def _components(name: str, stated: Any, where: str, *, single: bool) -> Iterator[Component]:
+def _lacks(name: str, gas: Gas) -> bool:
+    """Return whether a gas lacks an input of its sampling train or of its fuel."""
+    if name in _TRAIN:
+        return gas.train is None or getattr(gas.train, name) is None
+    if name in {"excess_air", "air_humidity_ratio"}:
+        return gas.fuel is None or getattr(gas.fuel, name) is None
+    return False
+
+
+def _components(name: str, stated: Any, where: str, spec: Input, *, single: bool) -> Iterator[Component]:
     """Yield the components of one input, from its plain text or its table of parts.
 
     ``single``: one value serves all points, so that even its resolution is one deviation for all of them.
@@ -144,12 +173,12 @@ def _components(name: str, stated: Any, where: str, *, single: bool) -> Iterator
                     f"unknown part {part!r}", where=where, expected=f"one of {', '.join(PARTS)}",
                     how=f"perhaps {guess}" if guess else "",
                 )
-            yield from _part(name, part, text, f"{where} {part}", shared=single or part not in PER_POINT)
+            yield from _part(name, part, text, f"{where} {part}", spec, shared=single or part not in PER_POINT)
         return
-    yield from _part(name, "plain", stated, where, shared=name != "position")
+    yield from _part(name, "plain", stated, where, spec, shared=name != "position")
 
 
-def _part(name: str, part: str, text: Any, where: str, *, shared: bool) -> Iterator[Component]:
+def _part(name: str, part: str, text: Any, where: str, spec: Input, *, shared: bool) -> Iterator[Component]:
     if not isinstance(text, str):
         table = f" or a table of {', '.join(PARTS)}" if part == "plain" and name != "layout" else ""
         raise UnitError(f"{text!r}", where=where, expected=f'text such as "±1 %", "0.5 %" or "1 % (k=2)"{table}')
@@ -163,7 +192,7 @@ def _part(name: str, part: str, text: Any, where: str, *, shared: bool) -> Itera
         step = found[0]
         found = [Term(step.number / 2.0, step.unit, "limits", math.sqrt(3.0), step.degrees_of_freedom, step.text)]
     for place, term in enumerate(found, 1):
-        standard, relative = _standard(name, term, where)
+        standard, relative = _standard(name, spec, term, where)
         # Each term has a row of its own in the budget, so each needs a name of its own.
         kind = part if place == 1 else f"{part} {place}" if part != "plain" else f"term {place}"
         yield Component(
@@ -176,9 +205,8 @@ def _relative(name: str) -> bool:
     return INPUTS[name].percent != "points"
 
 
-def _standard(name: str, term: Term, where: str) -> tuple[float, bool]:
+def _standard(name: str, spec: Input, term: Term, where: str) -> tuple[float, bool]:
     """Return the standard uncertainty and whether it is relative. A step of temperature has no offset."""
-    spec = INPUTS[name]
     number = term.number / term.factor
     if term.unit == "%" and spec.percent != "points":
         if spec.percent == "refused":

@@ -106,7 +106,9 @@ def from_excess_air(
     return _products(fuel, gas, dry_air, surplus / gas + 0.5 * z, z, humidity_ratio)
 
 
-def _products(fuel: Atoms, gas: Array, dry_air: Array, oxygen: Array, carbon_monoxide: Array, humidity_ratio: npt.ArrayLike) -> dict[str, Array]:
+def _products(
+    fuel: Atoms, gas: Array, dry_air: Array, oxygen: Array, carbon_monoxide: Array, humidity_ratio: npt.ArrayLike
+) -> dict[str, Array]:
     """Return the composition from the moles of dry gas and of dry air."""
     carbon_dioxide = (fuel.carbon + DRY_AIR["CO2"] * dry_air) / gas - carbon_monoxide
     water = fuel.hydrogen / 2.0 + fuel.water + dry_air * np.asarray(humidity_ratio, dtype=np.float64) / RATIO

@@ -138,6 +138,6 @@ def _energy_balance(wet_bulb: Array, temperature: Array, ratio: Array, heat: Arr
     return np.where(wet_bulb < _FREEZING, branch(WET_BULB["ice"]), branch(WET_BULB["water"]))
 
 
-def fahrenheit(temperature: Array) -> Array:
+def fahrenheit(temperature: npt.ArrayLike) -> Array:
     """Return a temperature [K] in degrees Fahrenheit."""
-    return np.asarray((temperature - 273.15) * 1.8 + 32.0)
+    return np.asarray((np.asarray(temperature, dtype=np.float64) - 273.15) * 1.8 + 32.0)

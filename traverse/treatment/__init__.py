@@ -12,13 +12,14 @@ from traverse.chain import Setting
 from traverse.errors import DomainError, ReadingError
 from traverse.methods import Method
 from traverse.model import COMPONENTS, UNREAD, Array, Corrections, Job, Layout, Policies, Readings, Reference, Run, Section, frozen
-from traverse.physics.water import saturation_pressure
+from traverse.treatment._matter import derived_gas, matter_findings, molar_mass, shown_water, stack_inputs, stack_setting, why_no_water
 from traverse.treatment._unread import FROM_FIELD, fill
 from traverse.treatment._unread import RULES as MISSING_RULES
 
 Flags = npt.NDArray[np.bool_]
 __all__ = [
-    "FROM_FIELD", "MISSING_RULES", "Flags", "Treated", "inputs", "point_factor", "refuse_impossible", "setting", "treat",
+    "FROM_FIELD", "MISSING_RULES", "Flags", "Treated", "derived_gas", "inputs", "matter_findings", "molar_mass", "point_factor",
+    "refuse_impossible", "setting", "treat",
 ]
 # Blockage of the section by a cylindrical stem: relative velocity correction per share of the area that the stem
 # fills. ISO 3966 clause 12 (corrections), value from memory.
@@ -118,7 +119,7 @@ def setting(job: Job, run: Run, method: Method, *, signed: bool = False) -> Sett
         density_given=density,  # type: ignore[arg-type]
         ratio_of_specific_heats=gas.ratio_of_specific_heats, arithmetic=method.arithmetic,
         compressible=method.compressible, signed=signed, constants=method.constants.get(job.units),
-        reference=_reference(job.reference), dimensions=tuple(job.plane.section.dimensions),
+        reference=_reference(job.reference), dimensions=tuple(job.plane.section.dimensions), stack=stack_setting(gas),
     )
 
 
@@ -158,6 +159,7 @@ def inputs(job: Job, run: Run, method: Method, treated: Treated) -> dict[str, Ar
         "profile_factor": one(treated.profile_factor),
     }
     values |= {name: one(gas.fraction(name)) for name in COMPONENTS}
+    values |= stack_inputs(gas)
     values |= {name: one(stated.value) for name, stated in job.plane.section.dimensions.items()}
     return values
 
@@ -182,14 +184,11 @@ def refuse_impossible(quantities: dict[str, Array], run: Run) -> None:
     """
     gas = run.gas
     if gas.humidity != "none" and not np.isfinite(quantities["moisture"]):
-        stated = gas.water.text if gas.water else "saturated gas"
         temperature, pressure = float(quantities["temperature"]), float(quantities["absolute_pressure"])
-        limit = min(1.0, float(saturation_pressure(np.float64(temperature))) / pressure)
+        expected, how = why_no_water(gas, temperature, pressure)
         raise DomainError(
-            f"{gas.humidity.replace('_', ' ')} of {stated} is not possible at {temperature - 273.15:.1f} degC and "
-            f"{pressure:.0f} Pa", where=f"run {run.name}, [gas] {gas.humidity}",
-            expected=f"at most saturation, {100 * limit:.3g} % by volume",
-            how="for a gas with droplets say saturated = true" if gas.humidity == "moisture" and limit < 1.0 else "",
+            f"{shown_water(gas)} is not possible at {temperature - 273.15:.1f} degC and {pressure:.0f} Pa",
+            where=f"run {run.name}, [gas] {'fuel' if gas.humidity == 'combustion' else gas.humidity}", expected=expected, how=how,
         )
     for name in ("density", "mean_velocity", "actual_flow"):
         if not np.isfinite(quantities[name]):

@@ -12,19 +12,23 @@ from dataclasses import dataclass
 import numpy as np
 
 from traverse.model import Array, Component, Job, Run
+from traverse.physics.mixture import SPECIES
 from traverse.result import RunResult
 from traverse.treatment import Flags
 
 # Job-file input -> the chain's input that it moves. Inputs not listed move the chain's input of the same name.
 _TARGET = {
     "moisture": "moisture_shift", "relative_humidity": "water", "wet_bulb": "water", "dew_point": "water",
-    "humidity_ratio": "water", "position": "root_shift", "layout": "profile_factor", "turbulence": "point_factor",
+    "humidity_ratio": "water", "meter_pressure": "meter_barometric",
+    "position": "root_shift", "layout": "profile_factor", "turbulence": "point_factor",
 }
 _UNIT = {
     "coefficient": "1", "differential_pressure": "Pa", "temperature": "K", "static": "Pa", "barometric": "Pa",
     "moisture": "1", "relative_humidity": "1", "wet_bulb": "K", "dew_point": "K", "humidity_ratio": "kg/kg",
     "oxygen": "1", "carbon_dioxide": "1", "carbon_monoxide": "1", "sulfur_dioxide": "1", "density": "kg/m3",
     "molar_mass": "g/mol", "position": "m", "yaw": "rad", "layout": "1",
+    "condensed": "kg", "silica_gel": "kg", "meter_volume": "m3", "meter_temperature": "K", "meter_pressure": "Pa", "orifice_pressure": "Pa",
+    "meter_factor": "1", "excess_air": "1", "air_humidity_ratio": "kg/kg", **dict.fromkeys(SPECIES, "1"),
 }
 
 
@@ -57,12 +61,12 @@ def rows(job: Job, run: Run, inputs: Mapping[str, Array], counted: Flags) -> tup
     found: list[Row] = []
     for component in stated:
         names = job.plane.section.dimensions if component.input == "dimensions" else (component.input,)
-        found.extend(_row(component, name, job, inputs, counted) for name in names)
+        found.extend(_row(component, name, job, run, inputs, counted) for name in names)
     found.extend(_from_readings(job, run, counted))
     return tuple(row for row in found if row.directions)
 
 
-def _row(component: Component, name: str, job: Job, inputs: Mapping[str, Array], counted: Flags) -> Row:
+def _row(component: Component, name: str, job: Job, run: Run, inputs: Mapping[str, Array], counted: Flags) -> Row:
     target = _TARGET.get(name, name)
     base = np.asarray(inputs[target], dtype=np.float64)
     if name == "moisture" and component.relative:
@@ -74,9 +78,11 @@ def _row(component: Component, name: str, job: Job, inputs: Mapping[str, Array],
         shown = component.standard
     if not component.shared:
         size = np.broadcast_to(size, (job.layout.size,))
+    unit = "m" if name in job.plane.section.dimensions else _UNIT[name]
+    if name == "condensed" and run.gas.train is not None:
+        unit = "m3" if run.gas.train.by_volume else "kg"
     return Row(
-        input=name, kind=component.kind, shared=component.shared, standard_uncertainty=shown,
-        unit="m" if name in job.plane.section.dimensions else _UNIT[name],
+        input=name, kind=component.kind, shared=component.shared, standard_uncertainty=shown, unit=unit,
         degrees_of_freedom=component.degrees_of_freedom, stated=component.text, second_order=name == "yaw",
         directions=tuple(_directions(target, size, component.shared, counted)),
     )

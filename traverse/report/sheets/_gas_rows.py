@@ -5,10 +5,10 @@ from __future__ import annotations
 import numpy as np
 
 from traverse.physics import gas, moist_air, water
+from traverse.report.sheets import _stack_rows
 from traverse.report.sheets._ledger import Ledger
 from traverse.report.sheets._run_view import RunView
 from traverse.report.sheets._view import View
-from traverse.result import RunResult
 
 _SATURATION = "{s0}/T+{s1}+{s2}*T+{s3}*T^2+{s4}*T^3+{s5}*T^4+{s6}*LN(T)"
 
@@ -44,6 +44,7 @@ def gas_rows(ledger: Ledger, view: View, run: RunView) -> None:
     ledger.live("Tm", "Mean temperature", mean("T"), run.mean["temperature"], "K", "area-weighted", fmt="0.00")
     ledger.live("psm", "Mean static pressure", mean("ps"), run.mean["static"], "Pa", "gauge, area-weighted", fmt="0.0")
     ledger.live("pm", "Mean absolute pressure", mean("p"), run.mean["pressure"], "Pa", "area-weighted", fmt="0.0")
+    _stack_rows.fuel_rows(ledger, run)
     _moisture(ledger, run)
     _molar_mass(ledger, run)
     if run.setting.compressible:
@@ -78,6 +79,16 @@ def _moisture(ledger: Ledger, run: RunView) -> None:
     elif form == "dew_point":
         _saturation(ledger, "pws", "Saturation pressure at the dew point", "water", run.input("water"))
         formula = "{pws}/{pm}"
+    elif form == "moisture_train":
+        formula = _stack_rows.train_rows(ledger, run)
+        if run.mean["temperature"] <= 473.15:
+            _saturation(ledger, "pws", "Saturation pressure at the mean temperature", "Tm", run.mean["temperature"])
+            formula = f"MIN({formula},{{pws}}/{{pm}})"
+    elif form == "combustion":
+        formula = "{xb}"
+    elif form == "wet_bulb" and run.setting.stack is not None and run.setting.stack.psychrometer:
+        _saturation(ledger, "pws", "Saturation pressure at the wet bulb", "water", run.input("water"))
+        formula = _stack_rows.psychrometer_rows(ledger, run)
     elif form == "wet_bulb":
         _wet_bulb(ledger, run)
         formula = "{W}/({W}+{eps})"
@@ -116,17 +127,19 @@ def _molar_mass(ledger: Ledger, run: RunView) -> None:
         return
     if run.setting.gas_kind == "air":
         ledger.live("Md", "Molar mass, dry", "{Mair}", dry, "g/mol")
+    elif run.setting.gas_kind == "mixture":
+        ledger.live("Md", "Molar mass, dry", _stack_rows.mixture_rows(ledger, run), dry, "g/mol")
     else:
-        ledger.live("Md", "Molar mass, dry", _flue_mass(ledger, run.result, own=run.setting.constants is not None), dry, "g/mol")
+        ledger.live("Md", "Molar mass, dry", _flue_mass(ledger, run, own=run.setting.constants is not None), dry, "g/mol")
     ledger.live("M", "Molar mass, wet", "{Md}*(1-{x})+{Mw}*{x}", wet, "g/mol")
 
 
 _SPECIES = {"oxygen": "O2", "carbon_dioxide": "CO2", "carbon_monoxide": "CO", "sulfur_dioxide": "SO2"}
 
 
-def _flue_mass(ledger: Ledger, result: RunResult, *, own: bool) -> str:
+def _flue_mass(ledger: Ledger, run: RunView, *, own: bool) -> str:
     """Put the molar masses of the analysed gases and return the formula of the dry molar mass."""
-    names = list(result.run.gas.composition)
+    names = list(run.analysed)
     rest = "(1" + "".join(f"-{{{name}}}" for name in names) + ")"
     if own:
         for key, label, value in (
@@ -146,7 +159,7 @@ def _flue_mass(ledger: Ledger, result: RunResult, *, own: bool) -> str:
 def _ratio(ledger: Ledger, run: RunView) -> None:
     """Put the ratio of specific heats and the exponent of the isentropic factor."""
     ratio = run.ratio
-    if run.setting.ratio_of_specific_heats is not None or run.setting.gas_kind != "flue-gas":
+    if run.setting.ratio_of_specific_heats is not None or run.setting.gas_kind not in {"flue-gas", "mixture"}:
         source = "as stated" if run.setting.ratio_of_specific_heats is not None else "air and given gas"
         ledger.number("gamma", "Ratio of specific heats", ratio, "1", source)
     else:
@@ -167,9 +180,11 @@ def _ratio(ledger: Ledger, run: RunView) -> None:
 
 def _fraction(name: str, run: RunView) -> str:
     """Return the formula of a species' wet mole fraction."""
-    stated = {species: key for key, species in _SPECIES.items() if key in run.result.run.gas.composition}
+    stated = {species: key for key, species in _SPECIES.items() if key in run.analysed}
     if name == "H2O":
         return "{x}"
+    if run.setting.gas_kind == "mixture":
+        return f"{{d.{name}}}*(1-{{x}})"
     if name in stated:
         return f"{{{stated[name]}}}*(1-{{x}})"
     if name in {"N2", "Ar"}:

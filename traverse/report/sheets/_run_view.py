@@ -6,8 +6,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from traverse.chain import Setting, composition, ratio_of_specific_heats, roots
+from traverse.chain import Setting, composition, ratio_of_specific_heats, resolved, roots
 from traverse.model import COMPONENTS, Array
+from traverse.physics import mixture
 from traverse.physics.gas import wet_composition
 from traverse.report.sheets._view import View
 from traverse.result import RunResult
@@ -32,8 +33,8 @@ class RunView:
     def of(cls, view: View, index: int) -> RunView:
         """Return the view of one run."""
         job, result = view.result.job, view.result.runs[index]
-        arrays = inputs(job, result.run, view.method, result.treated)
         equations = setting(job, result.run, view.method, signed=job.policies.negative == "signed")
+        arrays = dict(resolved(inputs(job, result.run, view.method, result.treated), equations))
         pressure = arrays["barometric"] + arrays["static"]
         weight = result.treated.weight
         mean = {
@@ -49,9 +50,20 @@ class RunView:
         )
 
     def composition(self) -> dict[str, Array]:
-        """Return the wet mole fractions of a flue gas by species."""
+        """Return the wet mole fractions of a flue gas or a mixture by species."""
+        stack = self.setting.stack
+        if self.setting.gas_kind == "mixture" and stack is not None:
+            parts = {name: self.input(name) for name in stack.species}
+            return mixture.wet(mixture.dry_fractions(parts, stack.species, stack.rest, self.input("water")), self.matter["moisture"])
         oxygen, carbon_dioxide, carbon_monoxide, sulfur_dioxide = (self.input(name) for name in COMPONENTS)
         return wet_composition(oxygen, carbon_dioxide, carbon_monoxide, sulfur_dioxide, self.matter["moisture"])
+
+    @property
+    def analysed(self) -> tuple[str, ...]:
+        """The dry fractions that a flue gas is weighed by: those stated, and those that follow from its fuel."""
+        stated, stack = self.result.run.gas.composition, self.setting.stack
+        derived = ("oxygen", "carbon_dioxide", "sulfur_dioxide") if stack is not None and stack.fuel and stack.fuel_composition else ()
+        return tuple(name for name in COMPONENTS if name in stated or name in derived) if derived else tuple(stated)
 
     def input(self, name: str) -> float:
         """Return an input that holds for the whole run."""

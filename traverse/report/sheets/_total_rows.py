@@ -103,7 +103,7 @@ def _reynolds(ledger: Ledger, view: View, run: RunView) -> None:
     """Put hydraulic diameter, viscosity and Reynolds number."""
     temperature = run.mean["temperature"]
     _section_rows.hydraulic_diameter(ledger, view.result.job.plane.section)
-    if run.setting.gas_kind != "flue-gas":
+    if run.setting.gas_kind not in {"flue-gas", "mixture"}:
         formula = f"{gas.AIR_BETA!r}*{{Tm}}^1.5/({{Tm}}+{gas.AIR_SUTHERLAND!r})"
         ledger.live("mu", "Viscosity of air", formula, float(gas.air_viscosity(temperature)), "Pa s",
                     "Sutherland's law, US Standard Atmosphere 1976", fmt="0.000E+00")

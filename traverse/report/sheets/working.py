@@ -6,6 +6,7 @@ from traverse.report.sheets._gas_rows import gas_rows, species_rows
 from traverse.report.sheets._ledger import Ledger
 from traverse.report.sheets._point_rows import point_table
 from traverse.report.sheets._run_view import RunView
+from traverse.report.sheets._stack_rows import stack_stated
 from traverse.report.sheets._total_rows import total_rows
 from traverse.report.sheets._view import View
 from traverse.report.spec import ScatterChart, Series, SheetSpec, Text
@@ -53,8 +54,10 @@ def _stated(ledger: Ledger, view: View, run: RunView) -> None:
     if gas.water is not None:
         unit = {"wet_bulb": "K", "dew_point": "K", "humidity_ratio": "kg/kg"}.get(gas.humidity, "1")
         ledger.stated("water", gas.humidity.replace("_", " ").capitalize(), gas.water, unit)
+    basis = "wet" if gas.kind == "mixture" else "dry"
     for component, stated in gas.composition.items():
-        ledger.stated(component, f"{component.replace('_', ' ').capitalize()} (dry)", stated, "1")
+        ledger.stated(component, f"{component.replace('_', ' ').capitalize()} ({basis})", stated, "1")
+    stack_stated(ledger, gas)
     for label, given, unit in (
         ("density", gas.density, "kg/m3"), ("density_temperature", gas.density_temperature, "K"),
         ("density_pressure", gas.density_pressure, "Pa"), ("molar_mass_given", gas.molar_mass, "g/mol"),
