@@ -8,7 +8,7 @@ from typing import Literal
 
 from traverse import tables
 from traverse.methods import Method
-from traverse.model import Job
+from traverse.model import Job, Quality
 from traverse.result import CheckOutcome, DesignComparison, RunResult
 
 
@@ -20,6 +20,11 @@ class View:
     method: Method
     result: RunResult
     design: DesignComparison | None
+
+    @property
+    def quality(self) -> Quality:
+        """What was written down beside the readings of the run; nothing where the job has no [quality]."""
+        return self.job.quality.get(self.result.run.name, Quality())
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -15,7 +15,7 @@ from traverse.importers._schema import RUN_TABLES, SCHEMA, Key, Table, check, co
 from traverse.model import Finding, Source
 
 # Tables that are read by a grammar of their own, or kept for a later version.
-_OWN = ("run", "submitted")
+_OWN = ("run", "submitted", "quality")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -36,6 +36,7 @@ class Document:
     uncertainty: Mapping[str, Any] | None
     runs: tuple[Override, ...]
     findings: tuple[Finding, ...]
+    quality: Mapping[str, Any] | None = None
 
     def table(self, name: str) -> Table:
         """Return a table; an empty one where the file has none."""
@@ -114,8 +115,14 @@ def interpreted(path: Path, text: str, origin: Source, before: tuple[Finding, ..
         ))
     return Document(
         path=path, source=origin, tables=tables, uncertainty=content.get("uncertainty"),
-        runs=_overrides(content.get("run", [])), findings=tuple(findings),
+        runs=_overrides(content.get("run", [])), findings=tuple(findings), quality=_quality(content.get("quality")),
     )
+
+
+def _quality(values: Any) -> Mapping[str, Any] | None:
+    if values is not None and not isinstance(values, dict):
+        raise JobError(f"quality = {values!r}", where="[quality]", expected="a table")
+    return values
 
 
 def _unknown(path: Path, name: str, values: object) -> JobError:

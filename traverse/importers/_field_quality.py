@@ -30,6 +30,16 @@ def findings(
     return found
 
 
+def stated(page: Page, header: Mapping[str, Any], printed: Mapping[str, str]) -> dict[str, Any]:
+    """Return leak checks and repeated readings as [quality] has them, so that the checks decide on them."""
+    found: dict[str, Any] = {key: str(header[key]).lower() for key in ("leak_before", "leak_after") if header.get(key)}
+    again = {
+        f"{line}{int(values['repeated_point'])}": f"{values['repeated_reading']!r} {printed['repeated_reading']}"
+        for line, values in _lines(page) if {"repeated_point", "repeated_reading"} <= set(values)
+    }
+    return found | ({"repeats": again} if again else {})
+
+
 def _finding(page: Page, topic: str, message: str, *, attention: bool) -> Finding:
     return Finding(level="attention" if attention else "note", topic=topic, message=message, where=f"{page.file} '{page.title}'")
 

@@ -71,6 +71,7 @@ def read(path: Path, *, filled: bool) -> Book:
     findings: list[Finding] = []
     overrides: dict[str, Override] = {}
     dates: dict[str, dt.date] = {}
+    quality: dict[str, dict[str, Any]] = {}
     for run, page in _field_pages.run_pages(found, name):
         sheet = _Sheet(page, run, printed, decimal)
         records = sheet.records()
@@ -84,9 +85,13 @@ def read(path: Path, *, filled: bool) -> Book:
             dates[run] = _date(header["date"])
         findings += _said(header, page, run)
         findings += _field_quality.findings(page, run, printed, header, records)
+        quality[run] = _field_quality.stated(page, header, printed)
     if filled and not runs:
         raise ReadingError("no readings on any page", where=name, expected="at least one run with readings")
     document = _with(document, runs, overrides, dates, findings)
+    common = {key: values for key, values in (document.quality or {}).items() if key != "run"}
+    own = (document.quality or {}).get("run", {})
+    document = replace(document, quality=common | {"run": {run: {**own.get(run, {}), **found} for run, found in quality.items()}})
     return Book(document=document, table=Table(source=origin, heads=_heads(printed), runs=runs, findings=tuple(findings)))
 
 

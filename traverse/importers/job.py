@@ -9,7 +9,7 @@ from typing import Literal, cast
 
 from traverse import methods
 from traverse.errors import JobError
-from traverse.importers import _gas, _layout, _plane, _runs, _uncertainty, _wall_effects
+from traverse.importers import _gas, _layout, _plane, _quality, _runs, _uncertainty, _wall_effects
 from traverse.importers._document import Document
 from traverse.importers._labels import point_number
 from traverse.importers._matching import Plan
@@ -48,6 +48,7 @@ def load(document: Document, readings: ReadReadings, points: ReadPoints, rows: _
     return Job(
         title=_title(document), date=document.table("job").get("date"), method=frame.method.id, units=frame.units,
         plane=frame.plane, layout=frame.layout, runs=runs, reference=_plane.reference(document.table("reference")),
+        quality=_quality.build(document.quality, tuple(run.name for run in runs), frame.layout),
         uncertainties=_uncertainty.build(document.uncertainty, runs),
         design=_plane.design(document.table("design"), frame.plane.section),
         corrections=corrections, policies=_policies(document), sources=(*_sources(frame, table), *sources),

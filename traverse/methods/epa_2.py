@@ -20,7 +20,7 @@ METHOD = Method(
     reference={"us": ("68 degF", "29.92 inHg"), "si": ("20 degC", "760 mmHg")},
     wall_distance=wall_limits.method_1,
     checks=(
-        "negative-readings", "gauge-sensitivity", "point-count", "straight-lengths", "saturation", "swirl",
+        "negative-readings", "gauge-sensitivity", "point-count", "straight-lengths", "saturation", "swirl", "leak-check",
     ),
     notes=(
         "The printed constants (velocity constant, 460 or 273, 13.6, 18.0, 0.440/0.320/0.280) are used as they stand; "

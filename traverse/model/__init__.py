@@ -31,8 +31,10 @@ from traverse.model._job import (
 )
 from traverse.model._matter import Fuel, MoistureTrain
 from traverse.model._place import Layout, Plane, Section, Shape
+from traverse.model._quality import CALIBRATED, Leak, Quality
 
 __all__ = [
+    "CALIBRATED",
     "COMPONENTS",
     "NULL",
     "STATUSES",
@@ -51,10 +53,12 @@ __all__ = [
     "Humidity",
     "Job",
     "Layout",
+    "Leak",
     "MoistureTrain",
     "Pitot",
     "Plane",
     "Policies",
+    "Quality",
     "Readings",
     "Reference",
     "Run",

@@ -14,6 +14,7 @@ from traverse.errors import DomainError, JobError, ReadingError
 from traverse.model._base import Array, Finding, frozen
 from traverse.model._matter import Fuel, MoistureTrain
 from traverse.model._place import Layout, Plane, check_ports
+from traverse.model._quality import Quality
 from traverse.units import Stated
 
 Status = Literal["read", "missing", "obstructed", "below range", "negative", "over range", "plugged", "excluded"]
@@ -293,6 +294,7 @@ class Job:
     policies: Policies
     sources: tuple[Source, ...]
     findings: tuple[Finding, ...] = ()
+    quality: Mapping[str, Quality] = field(default_factory=dict)
 
     def __post_init__(self) -> None:
         if not self.runs:
