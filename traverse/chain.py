@@ -96,7 +96,7 @@ def evaluate(inputs: Mapping[str, Array], setting: Setting) -> Flow:
     mean["pressure"] = _mean(weight, pressure)
     matter = composition(inputs, setting, mean["temperature"], mean["pressure"])
     root = roots(inputs["differential_pressure"], signed=setting.signed) + inputs["root_shift"]
-    step = _root_mean if setting.arithmetic == "root-mean" else _pointwise
+    step = _pointwise if setting.constants is None else _own_units
     flow = step(inputs, setting, matter, root, mean)
     size = {name: inputs[name] for name in setting.dimensions}
     return _totals(flow, inputs, setting, matter, root, mean, size)
@@ -234,16 +234,21 @@ def _pointwise(
     return flow
 
 
-def _root_mean(
+def _own_units(
     inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array], root: Array,
     mean: Mapping[str, Array],
 ) -> dict[str, Array]:
-    """Mean root with mean temperature, in the units and constants of the method (Method 2, eqs. 2-7 and 2-8)."""
+    """Velocities in the units and constants of the method.
+
+    Mean root with mean temperature (Method 2, eqs. 2-7 and 2-8), or each point with its own temperature inside the root
+    (Method 2G, eq. 2G-6; flows with the mean temperature, eqs. 2G-9 and 2G-10).
+    """
     own = setting.constants
-    assert own is not None, "root-mean arithmetic needs a method's constants"
+    assert own is not None, "only for a method with constants of its own"
     temperature = _own_temperature(mean["temperature"], own)
+    local = temperature if setting.arithmetic == "root-mean" else _own_temperature(inputs["temperature"], own)
     absolute = _own(inputs["barometric"], own.pressure) + _own(mean["static"], own.head) / own.water_over_mercury
-    factor = own.velocity_constant * inputs["coefficient"] * np.sqrt(temperature / (absolute * matter["molar_mass"]))
+    factor = own.velocity_constant * inputs["coefficient"] * np.sqrt(local / (absolute * matter["molar_mass"]))
     head = root * np.sqrt(convert(1.0, own.head))
     speed = factor * head / convert(1.0, own.velocity)
     velocity = speed * np.cos(inputs["yaw"]) * inputs["point_factor"]

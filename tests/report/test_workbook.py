@@ -25,6 +25,8 @@ HOT = {"temperature": "150 degC"}
 REFERENCE = {"temperature": "20 degC", "pressure": "101325 Pa"}
 UNCERTAIN = {"coefficient": "±1 %", "differential_pressure": {"repeatability": "2 % (df=5)", "calibration": "1 % + 0.5 Pa"}, "layout": "1 %"}
 MISSING = jobs.READINGS.replace("A,2,60", "A,2,obstructed").replace("B,3,63", "B,3,-4").replace("B,4,52", "B,4,<10")
+YAWED = "line,point,differential_pressure [Pa],yaw [deg],static [mmH2O],temperature [degF]\n" + "".join(
+    f"{n},{k},{50 + k},{3 * k},{-10 - k},{270 + 20 * k}\n" for n in "AB" for k in (1, 2, 3, 4))
 OVAL = "line,point,differential_pressure [Pa]\n" + "".join(f"{n},{k},{40 + 3 * k}\n" for n in "ABCDE" for k in (1, 2))
 TWENTY_SIX = "line,point,differential_pressure [Pa]\n" + "".join(
     f"{n},{k},{40 + 2 * k}\n" for n, count in zip("ABCD", (7, 6, 6, 7), strict=True) for k in range(1, count + 1))
@@ -61,6 +63,8 @@ VARIANTS = {
     "velocity": ({"readings": {"meter_density": "1.2 kg/m3"}}, jobs.READINGS.replace("differential_pressure [Pa]", "velocity [ft/min]").replace(",50", ",1900")),
     "yaw": ({}, "line,point,differential_pressure [Pa],yaw [deg],static [mmH2O],temperature [degF]\n" + "".join(
         f"{n},{k},{50 + k},{3 * k},{-10 - k},{70 + k}\n" for n in "AB" for k in (1, 2, 3, 4))),
+    "epa_2g": ({"job": {"method": "epa-2g", "units": "us"}, "gas": FLUE, "conditions": HOT, "uncertainty": UNCERTAIN}, YAWED),
+    "epa_2g_si": ({"job": {"method": "epa-2g"}, "gas": FLUE, "readings": {"missing": "omit"}}, YAWED.replace(",53,", ",obstructed,")),
     "rectangle": ({"plane": {"shape": "rectangle", "diameter": None, "width": "24 in", "height": "16 in", "port_depth": "2 in"},
                    "layout": {"lines": 2, "points": 4, "along": "width"}, "job": {"units": "us"}}, jobs.READINGS),
     "ellipse": ({"plane": {"shape": "ellipse", "diameter": None, "width": "1.4 m", "height": "32 in", "lining": "20 mm", "deposit": "2 mm"},

@@ -12,7 +12,7 @@ from traverse.units import parse
 
 def decide(view: View) -> Verdict:
     """Compare the number of points in the layout with the least number of the job's method."""
-    rule = load("site_rules")["point_count"].get(view.method.id)
+    rule = load("site_rules")["point_count"].get(view.method.count_rule or view.method.id)
     if rule is None and view.method.count_rule:
         return _by_count_rule(view)
     if rule is None:

@@ -7,7 +7,7 @@ from traverse.tables import load
 
 def decide(view: View) -> Verdict:
     """Compare the stated straight lengths with the rule of the job's method."""
-    rule = load("site_rules")["straight_lengths"].get(view.method.id)
+    rule = load("site_rules")["straight_lengths"].get(view.method.site_rule or view.method.id)
     if rule is None and view.method.site_rule:
         return _by_site_rule(view)
     if rule is None:

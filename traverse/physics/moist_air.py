@@ -12,6 +12,8 @@ from traverse.physics.gas import MOLAR_MASS
 from traverse.physics.water import saturation_pressure
 
 Array = npt.NDArray[np.float64]
+# Partial pressure of water vapour at saturation, from temperature [K] and absolute pressure [Pa]. [Pa]
+Saturation = Callable[[Array, Array], Array]
 # Molar mass of water over that of dry air: humidity ratio to mole ratio.
 RATIO = MOLAR_MASS["H2O"] / MOLAR_MASS["air"]
 WET_BULB = {
@@ -21,7 +23,13 @@ WET_BULB = {
 _CELSIUS = 273.15
 
 
-def mole_fraction(form: str, value: npt.ArrayLike, temperature: npt.ArrayLike, pressure: npt.ArrayLike) -> Array:
+def _pure(temperature: Array, _: Array) -> Array:
+    return saturation_pressure(temperature)
+
+
+def mole_fraction(
+    form: str, value: npt.ArrayLike, temperature: npt.ArrayLike, pressure: npt.ArrayLike, saturated: Saturation | None = None
+) -> Array:
     """Return the mole fraction of water vapour in the wet gas.
 
     Parameters
@@ -34,6 +42,8 @@ def mole_fraction(form: str, value: npt.ArrayLike, temperature: npt.ArrayLike, p
         Of the gas. [K]
     pressure : array_like, shape (...)
         Absolute. [Pa]
+    saturated : callable, optional
+        Saturation in another way than as pure water, such as in real air (``humid_air.saturation``).
 
     Returns
     -------
@@ -44,33 +54,34 @@ def mole_fraction(form: str, value: npt.ArrayLike, temperature: npt.ArrayLike, p
 
     Notes
     -----
-    Ideal gas; no enhancement factor (it raises the fraction by 0.4 to 0.6 % of itself near room temperature).
+    Ideal gas; without ``saturated`` no enhancement factor (it raises the fraction by 0.4 to 0.6 % of itself near room temperature).
     Wet bulb: ASHRAE Fundamentals 2017, chapter 1, equations 33 (water) and 35 (ice).
     """
     t = np.asarray(temperature, dtype=np.float64)
     p = np.asarray(pressure, dtype=np.float64)
     v = np.asarray(value, dtype=np.float64)
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        x = _FORMS[form](v, t, p)
-        limit = np.minimum(saturation_pressure(t) / p, 1.0)
+        at = saturated or _pure
+        x = _FORMS[form](v, t, p, at)
+        limit = np.minimum(at(t, p) / p, 1.0)
         possible = (x >= 0.0) & (x <= limit * (1.0 + 1e-9)) & (x < 1.0)
     return np.asarray(np.where(possible, x, np.nan))
 
 
-def _relative(v: Array, t: Array, p: Array) -> Array:
-    x = np.where(v == 0.0, 0.0, v * saturation_pressure(t) / p)
+def _relative(v: Array, t: Array, p: Array, at: Saturation) -> Array:
+    x = np.where(v == 0.0, 0.0, v * at(t, p) / p)
     return np.where((v >= 0.0) & (v <= 1.0), x, np.nan)
 
 
-def _dew_point(v: Array, t: Array, p: Array) -> Array:
-    return np.where(v <= t, saturation_pressure(v) / p, np.nan)
+def _dew_point(v: Array, t: Array, p: Array, at: Saturation) -> Array:
+    return np.where(v <= t, at(v, p) / p, np.nan)
 
 
-def humidity_ratio_from_wet_bulb(wet_bulb: Array, temperature: Array, pressure: Array) -> Array:
+def humidity_ratio_from_wet_bulb(wet_bulb: Array, temperature: Array, pressure: Array, at: Saturation = _pure) -> Array:
     """Return the humidity ratio from dry and wet bulb. [kg/kg]  NaN where the wet bulb is above the dry bulb."""
     td, tw = temperature - _CELSIUS, wet_bulb - _CELSIUS
-    saturated = saturation_pressure(wet_bulb)
-    ws = np.where(saturated < pressure, RATIO * saturated / (pressure - saturated), np.nan)
+    vapour = at(wet_bulb, pressure)
+    ws = np.where(vapour < pressure, RATIO * vapour / (pressure - vapour), np.nan)
 
     def branch(c: dict[str, float]) -> Array:
         top = (c["latent"] - c["slope"] * tw) * ws - c["heat"] * (td - tw)
@@ -80,17 +91,17 @@ def humidity_ratio_from_wet_bulb(wet_bulb: Array, temperature: Array, pressure: 
     return np.asarray(np.where(tw <= td, w, np.nan))
 
 
-def _wet_bulb(v: Array, t: Array, p: Array) -> Array:
-    w = humidity_ratio_from_wet_bulb(v, t, p)
+def _wet_bulb(v: Array, t: Array, p: Array, at: Saturation) -> Array:
+    w = humidity_ratio_from_wet_bulb(v, t, p, at)
     return w / (w + RATIO)
 
 
-_FORMS: dict[str, Callable[[Array, Array, Array], Array]] = {
+_FORMS: dict[str, Callable[[Array, Array, Array, Saturation], Array]] = {
     "relative_humidity": _relative,
     "wet_bulb": _wet_bulb,
     "dew_point": _dew_point,
-    "humidity_ratio": lambda v, t, p: v / (v + RATIO) + 0.0 * (t + p),
-    "moisture": lambda v, t, p: v + 0.0 * (t + p),
-    "saturated": lambda v, t, p: saturation_pressure(t) / p + 0.0 * v,
-    "dry": lambda v, t, p: 0.0 * (v + t + p),
+    "humidity_ratio": lambda v, t, p, _: v / (v + RATIO) + 0.0 * (t + p),
+    "moisture": lambda v, t, p, _: v + 0.0 * (t + p),
+    "saturated": lambda v, t, p, at: at(t, p) / p + 0.0 * v,
+    "dry": lambda v, t, p, _: 0.0 * (v + t + p),
 }

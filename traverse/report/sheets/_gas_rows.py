@@ -49,7 +49,7 @@ def gas_rows(ledger: Ledger, view: View, run: RunView) -> None:
     _molar_mass(ledger, run)
     if run.setting.compressible:
         _ratio(ledger, run)
-    if run.setting.arithmetic == "root-mean":
+    if run.setting.constants is not None:
         ledger.live("rho", "Density", "{pm}*{M}/(1000*{R}*{Tm})", float(run.result.density[0]), "kg/m3",
                     "gas law with the method's molar mass and the physical temperature")
 

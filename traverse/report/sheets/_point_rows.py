@@ -157,7 +157,7 @@ class _Point:
             self.number(row, 10, "ps", static, "0.0")
         self.live(row, 11, "p", "{barometric}+[ps]", float(run.pressure[i]), "0.0")
         density = float(np.broadcast_to(run.result.density, (self.view.layout.size,))[i])
-        if run.setting.arithmetic == "root-mean":
+        if run.setting.constants is not None:
             formula = "{rho}"
         elif run.setting.density_given == "at plane":
             formula = "{density}"
@@ -190,8 +190,8 @@ class _Point:
         else:
             self.number(row, 16, "f", factor, "0.00000")
         velocity = float(np.broadcast_to(run.result.velocity, (self.view.layout.size,))[i])
-        if run.setting.arithmetic == "root-mean":
-            self.live(row, 17, "v", "{speed_per_root}*[root]*[f]", velocity, "0.000")
+        if run.setting.constants is not None:
+            self.live(row, 17, "v", self._own_velocity(), velocity, "0.000")
         else:
             k_text = "*[k]" if run.setting.compressible else ""
             self.live(row, 17, "v", f"{{coefficient}}*[root]*SQRT(2/[rho]){k_text}*[f]", velocity, "0.000")
@@ -201,10 +201,19 @@ class _Point:
         self.live(row, 19, "wvr", "[wv]*[rho]", weight * velocity * density, "0.00000")
         self._standard(row, weight * velocity, density)
 
+    def _own_velocity(self) -> str:
+        """Return the formula of a velocity in the method's own arithmetic: with the mean temperature, or with the point's."""
+        own = self.run.setting.constants
+        assert own is not None, "asked only for such a method"
+        if self.run.setting.arithmetic == "root-mean":
+            return "{speed_per_root}*[root]*[f]"
+        scale = "[T]*1.8-459.67" if own.temperature == "degF" else "[T]-273.15"
+        return f"{{Kp}}*{{coefficient}}*SQRT(({scale}+{{offset}})/({{Ps}}*{{M}}))/SQRT({{f.head}})*{{f.speed}}*[root]*[f]"
+
     def _standard(self, row: int, weighted: float, density: float) -> None:
         """The point's part of the standard flow, where it is summed over the points."""
         run, reference = self.run, self.run.setting.reference
-        if reference is None or run.setting.arithmetic == "root-mean":
+        if reference is None or run.setting.constants is not None:
             return
         kind, first, second = reference
         if kind == "density":

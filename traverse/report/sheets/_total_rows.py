@@ -27,7 +27,7 @@ def total_rows(ledger: Ledger, view: View, run: RunView) -> None:
     _section_rows.area(ledger, view.result.job.plane.section)
     ledger.live("mr", "Mean root of differential pressure", f"SUMPRODUCT({column('w')},{column('root')})",
                 value("mean_root_differential_pressure"), "Pa^0.5", "area-weighted mean of the roots")
-    if run.setting.arithmetic == "root-mean":
+    if run.setting.constants is not None:
         _root_mean(ledger, run)
     factor = "*{wall_factor}" if view.result.job.corrections.wall_factor is not None else ""
     if view.layout.wall_exponent is not None:
@@ -38,7 +38,7 @@ def total_rows(ledger: Ledger, view: View, run: RunView) -> None:
     ledger.live("V", "Mean velocity", f"SUM({column('wv')}){factor}", value("mean_velocity"), "m/s", "sum of weight x velocity",
                 style="result")
     ledger.live("Q", "Actual flow (wet)", "{A}*{V}", value("actual_flow"), "m3/s", "area x mean velocity", style="result")
-    if run.setting.arithmetic == "root-mean":
+    if run.setting.constants is not None:
         ledger.live("m", "Mass flow", "{rho}*{Q}", value("mass_flow"), "kg/s", "density x actual flow", style="result")
     else:
         ledger.live("m", "Mass flow", f"{{A}}*SUM({column('wvr')}){factor}", value("mass_flow"), "kg/s",
