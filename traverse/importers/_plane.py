@@ -7,16 +7,13 @@ from typing import Literal, cast
 
 from traverse import tables
 from traverse.errors import JobError
-from traverse.importers import _section
+from traverse.importers import _barometer, _section
 from traverse.importers._schema import Table
 from traverse.methods import Method
 from traverse.model import Conditions, Corrections, Design, Finding, Gauge, Pitot, Plane, Reference, Section
-from traverse.physics.atmosphere import pressure_at_altitude
 from traverse.units import UNITS, Stated, parse
 
-# Plausible pressures of the atmosphere at a station [Pa]: below 30 kPa is higher than any peak, above 120 kPa deeper
-# than any mine; and gauge pressures that look like absolute ones. Common practice, no source.
-STATION = (30e3, 120e3)
+# Gauge pressures that look like absolute ones. Common practice, no source.
 LOOKS_ABSOLUTE = (80e3, 115e3)
 # Exponents of a turbulent profile: 5 to 10 are met in pipes (common practice), beyond these it is no profile of a duct.
 PROFILES = (3.0, 20.0)
@@ -94,14 +91,12 @@ def merge_conditions(base: Table, over: Table | None) -> Table:
     if over is None:
         return base
     kept = dict(base.values)
-    if "barometric" in over:
-        kept = {key: value for key, value in kept.items() if key not in {"altitude", "model"}}
-    if "altitude" in over:
-        kept.pop("barometric", None)
+    if any(key in over for key in _barometer.WAYS):
+        kept = {key: value for key, value in kept.items() if key not in {*_barometer.WAYS, "model"}}
     return Table(over.name, {**kept, **over.values})
 
 
-def conditions(table: Table, *, static_column: bool = False) -> tuple[Conditions, tuple[Finding, ...]]:
+def conditions(table: Table, *, static_column: bool = False, epa: str = "") -> tuple[Conditions, tuple[Finding, ...]]:
     """Return the state at the plane.
 
     Raises
@@ -110,7 +105,7 @@ def conditions(table: Table, *, static_column: bool = False) -> tuple[Conditions
         If the barometric pressure is missing, stated twice, or not one an atmosphere can have, or if the static
         pressure looks absolute.
     """
-    barometric, source, findings = _barometric(table)
+    barometric, source, findings = _barometer.pressure(table, epa=epa)
     static = table.stated("static")
     if static is not None:
         _gauge(table, static)
@@ -127,40 +122,6 @@ def conditions(table: Table, *, static_column: bool = False) -> tuple[Conditions
     return Conditions(
         barometric=barometric, barometric_source=source, static=static, temperature=temperature
     ), tuple(findings)
-
-
-def _barometric(table: Table) -> tuple[Stated, str, list[Finding]]:
-    stated, altitude = table.stated("barometric"), table.stated("altitude")
-    if stated is not None and altitude is not None:
-        raise JobError("both barometric and altitude", where=table.name, expected="exactly one of barometric | altitude")
-    if stated is not None:
-        if re.search(r"psig|gauge", stated.text, re.I) or not STATION[0] <= stated.value <= STATION[1]:
-            raise JobError(
-                f"a barometric pressure of {stated.text!r} ({stated.value / 1000:.4g} kPa)", where=table.where("barometric"),
-                expected="the absolute pressure at the station, 30 to 120 kPa (8.9 to 35.4 inHg)",
-                how="is this a gauge pressure, or a pressure reduced to sea level? give the station pressure",
-            )
-        if "model" in table:
-            raise JobError("model beside barometric", where=table.where("model"), expected="model only with altitude")
-        return stated, "[conditions] barometric", []
-    if altitude is None:
-        raise JobError(
-            "no barometric pressure", where=table.name, expected="the absolute pressure at the station",
-            how='barometric = "29.65 inHg", or altitude = "…" with model = "standard-atmosphere"',
-        )
-    if "model" not in table:
-        raise JobError(
-            "altitude without a model", where=table.where("altitude"), expected="the model that turns it into a pressure",
-            how='model = "standard-atmosphere"; a reading of a barometer is better',
-        )
-    pressure = float(pressure_at_altitude(altitude.value))
-    if not STATION[0] <= pressure <= STATION[1]:
-        raise JobError(f"{altitude.text!r}", where=table.where("altitude"), expected="an altitude from -500 m to 9000 m")
-    source = f"standard atmosphere at an altitude of {altitude.text}"
-    return Stated(pressure, pressure, UNITS["Pa"], altitude.text), source, [Finding(
-        level="attention", topic="barometric pressure", setting="[conditions] barometric",
-        message=f"{pressure:.0f} Pa by the {source}; a barometer may differ by some percent.",
-    )]
 
 
 def _gauge(table: Table, static: Stated) -> None:

@@ -59,7 +59,7 @@ class Filling:
 
 
 def build(
-    document: Document, table: ReadingTable, plan: Plan, method: Method
+    document: Document, table: ReadingTable, plan: Plan, method: Method, system: str
 ) -> tuple[tuple[Run, ...], tuple[Finding, ...]]:
     """Return all runs of the readings, in the order of the file.
 
@@ -75,11 +75,10 @@ def build(
                 f"the readings have no run {name!r}", where="[[run]] name",
                 expected=f"one of {', '.join(repr(run) for run in table.runs)}",
             )
-    meter_density = document.table("readings").stated("meter_density")
     runs: list[Run] = []
     findings: list[Finding] = []
     for name, records in table.runs.items():
-        run, found = _run(name, records, table, document, overrides.get(name), plan, method, meter_density)
+        run, found = _run(name, records, table, document, overrides.get(name), plan, method, system)
         runs.append(run)
         findings += found
     return tuple(runs), tuple(findings)
@@ -87,23 +86,23 @@ def build(
 
 def _run(
     name: str, records: Sequence[Record], table: ReadingTable, document: Document, override: Override | None, plan: Plan,
-    method: Method, meter_density: Stated | None,
+    method: Method, system: str,
 ) -> tuple[Run, list[Finding]]:
     over: Mapping[str, Table] = override.tables if override else {}
     gas, gas_findings = _gas.build(_gas.merge(document.table("gas"), over.get("gas")))
     pitot, pitot_findings = _pitot(document.table("pitot"), over.get("pitot"), method)
     recorded = {column for column in ("temperature", "static") if any(math.isfinite(r.si(column)) for r in records)}
     conditions, state_findings = _plane.conditions(
-        _plane.merge_conditions(document.table("conditions"), over.get("conditions")), static_column="static" in recorded
+        _plane.merge_conditions(document.table("conditions"), over.get("conditions")), static_column="static" in recorded,
+        epa=system if method.constants else "",
     )
     matched = match(name, records, plan)
     filling = Filling(name, table, matched, {record.where: place for place, record in enumerate(records)})
     filling.findings += [*gas_findings, *pitot_findings, *state_findings, *matched.findings]
     for column in sorted(recorded & set(over["conditions"].values)) if "conditions" in over else ():
         filling.note(column, f"{column} of [[run]] is not used: the readings' column counts", f"[readings.columns] {column}")
-    return Run(
-        name=name, conditions=conditions, gas=gas, pitot=pitot, readings=_readings(filling, conditions, meter_density)
-    ), filling.findings
+    readings = _readings(filling, conditions, document.table("readings").stated("meter_density"))
+    return Run(name=name, conditions=conditions, gas=gas, pitot=pitot, readings=readings), filling.findings
 
 
 def _pitot(base: Table, over: Table | None, method: Method) -> tuple[Pitot, tuple[Finding, ...]]:

@@ -52,6 +52,7 @@ GAS: Mapping[str, Key] = {
 }
 CONDITIONS: Mapping[str, Key] = {
     "barometric": PRESSURE, "altitude": LENGTH, "model": _choice("standard-atmosphere"), "static": PRESSURE,
+    "sea_level_pressure": PRESSURE, "altimeter_setting": PRESSURE, "air_temperature": TEMPERATURE, "height_above_barometer": LENGTH,
     "temperature": TEMPERATURE,
 }
 PITOT: Mapping[str, Key] = {

@@ -42,7 +42,7 @@ def load(document: Document, readings: ReadReadings, points: ReadPoints, rows: _
     table = readings(document)
     frame = _frame(document, table, readings, points)
     corrections, correction_findings = _plane.corrections(document.table("corrections"), frame.plane)
-    runs, run_findings = _runs.build(document, table, _plan(frame), frame.method)
+    runs, run_findings = _runs.build(document, table, _plan(frame), frame.method, frame.units)
     _refuse_blockage(corrections, runs)
     corrections, sources, wall_findings = _wall(document, frame, runs, corrections, rows)
     return Job(
@@ -71,7 +71,7 @@ def load_setup(document: Document, readings: ReadReadings, points: ReadPoints) -
         findings += found
     state = document.table("conditions")
     if "barometric" in state or "altitude" in state:
-        conditions, found = _plane.conditions(state, static_column=True)
+        conditions, found = _plane.conditions(state, static_column=True, epa=frame.units if frame.method.constants else "")
         findings += found
     return Setup(
         title=_title(document), date=document.table("job").get("date"), method=frame.method.id, units=frame.units,
