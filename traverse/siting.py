@@ -7,7 +7,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any, Literal
 
-from traverse import tables
+from traverse import layouts, tables
 from traverse.model import Job, Section, Setup
 from traverse.units import parse
 
@@ -203,59 +203,6 @@ def _least(rule: Mapping[str, Any], section: Section) -> tuple[int | None, str]:
     """Return a rule's least number of points for a section, and how it comes to it."""
     if section.shape not in ("round", "rectangle"):
         return None, f"no figure for a section of shape {section.shape}"
-    return _round(rule, section) if section.shape == "round" else _rectangle(rule, section)
-
-
-def _round(rule: Mapping[str, Any], section: Section) -> tuple[int, str]:
-    by_area = rule["by"] == "area"
-    least = int(_step(rule["round"], section.area if by_area else section.width))
-    if "round_by_diameter" in rule:
-        least = max(least, int(_step(rule["round_by_diameter"], section.width)))
-    note = f"area {section.area:.3g} m2" if by_area else f"diameter {section.width:.3g} m"
-    return _by_area(rule, section, least, note) if by_area else (least, note)
-
-
-def _by_area(rule: Mapping[str, Any], section: Section, least: int, note: str) -> tuple[int, str]:
-    """Return the number with what a rule wants for every square metre of a large section."""
-    if "per_square_metre" not in rule or section.area <= float(rule["above"]):
-        return least, note
-    least = max(least, math.ceil(float(rule["per_square_metre"]) * section.area * SLACK))
-    if "enough" not in rule:
-        return least, note
-    return min(least, int(rule["enough"])), f"{note}; {rule['enough']} normally enough"
-
-
-def _rectangle(rule: Mapping[str, Any], section: Section) -> tuple[int, str]:
-    if "side_points" in rule:
-        across, up = (int(_step(rule["side_points"], side)) for side in (section.width, section.height))
-        return max(across * up, 25), f"{across} x {up}"
-    if "cell_side" in rule:
-        return _cells(rule, section)
-    least, note = int(_step(rule["rectangle"], section.area)), f"area {section.area:.3g} m2"
-    if "longest_cell" in rule:
-        side = math.isqrt(least)
-        long, short = max(section.width, section.height), min(section.width, section.height)
-        pieces = max(side, math.ceil(long / (float(rule["longest_cell"]) * short / side) * SLACK))
-        least, note = side * pieces, f"{note}; {side} x {pieces}, cells of at most {rule['longest_cell']} : 1"
-    least, note = _by_area(rule, section, least, note)
-    if "cell_most" in rule:
-        side_most = float(rule["cell_most"])
-        least = max(least, math.ceil(section.width / side_most * SLACK) * math.ceil(section.height / side_most * SLACK))
-    return least, note
-
-
-def _cells(rule: Mapping[str, Any], section: Section) -> tuple[int, str]:
-    """Return the number of cells of at most a side that goes by the area."""
-    limits = rule["cell_side"]
-    if section.area <= float(rule.get("single_up_to", "0")):
-        return 1, f"area {section.area:.3g} m2: one central point allowed"
-    if section.area > float(limits[-1][0]):
-        return int(rule["most"]), f"area {section.area:.3g} m2: equal areas, normally up to {rule['most']}"
-    side = float(_step(limits, section.area))
-    across, up = (math.ceil(length / side * SLACK) for length in (section.width, section.height))
-    return min(across * up, int(rule["most"])), f"cells of at most {side:g} m: {across} x {up}"
-
-
-def _step(steps: Sequence[Sequence[str]], value: float) -> str:
-    """Return the entry of the first step whose limit is not exceeded."""
-    return next(entry for limit, entry in steps if value <= float(limit) * (1 + 1e-12))
+    return layouts.least(rule, layouts.Extent(
+        shape=section.shape, width=section.width, height=section.height, hydraulic_diameter=section.hydraulic_diameter
+    ))

@@ -29,14 +29,15 @@ from traverse.layouts._base import (
     move_off_wall,
     one_of,
 )
+from traverse.layouts._counts import least
 from traverse.layouts._custom import place_custom
 from traverse.layouts._integration import fitted_exponent, integrable, velocity_area
 from traverse.layouts._recognise import Match
 from traverse.physics import sections
 
 __all__ = [
-    "Extent", "Match", "Placement", "Rule", "Term", "fitted_exponent", "fractions", "integrable", "line_names", "place", "place_custom",
-    "recognise", "rule", "rules", "velocity_area",
+    "Extent", "Match", "Placement", "Rule", "Term", "fitted_exponent", "fractions", "integrable", "least", "line_names", "place",
+    "place_custom", "recognise", "rule", "rules", "velocity_area",
 ]
 
 
