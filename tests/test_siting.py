@@ -164,6 +164,12 @@ def test_shapes_the_documents_do_not_treat_have_no_count(tmp_path, plane):
     ("en-15259", {"shape": "rectangle", "diameter": None, "width": "4 m", "height": "1 m"}, 6, 3),
     ("iso-10780", {"shape": "rectangle", "diameter": None, "width": "3 m", "height": "0.5 m"}, 9, 3),
     ("jis-z-8808", {"shape": "rectangle", "diameter": None, "width": "2 m", "height": "1 m"}, 3, 2),
+    ("jis-z-8808", {"shape": "rectangle", "diameter": None, "width": "7 m", "height": "3 m"}, 5, 4),
+    ("small-duct", {"shape": "rectangle", "diameter": None, "width": "0.2 m", "height": "0.2 m"}, 3, 3),
+    ("alternative-site", {"shape": "rectangle", "diameter": None, "width": "1.2 m", "height": "1 m"}, 7, 6),
+    ("en-15259", {"shape": "rectangle", "diameter": None, "width": "0.8 m", "height": "0.8 m"}, 2, 2),
+    ("en-15259", {"shape": "rectangle", "diameter": None, "width": "3 m", "height": "3 m"}, 4, 5),
+    ("iso-10780", {"shape": "rectangle", "diameter": None, "width": "0.5 m", "height": "3 m"}, 3, 9),
 ])
 def test_a_rule_sets_lines_and_points_where_the_job_leaves_them_to_it(tmp_path, rule, plane, lines, points):
     job = load_setup(jobs.write(tmp_path, {"plane": plane, "layout": {"rule": rule, "lines": None, "points": None}}))
