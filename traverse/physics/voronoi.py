@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 
 import numpy as np
@@ -18,6 +19,8 @@ SAME_PLACE = 1e-9
 def shares(shape: str, size: Size, x: npt.ArrayLike, y: npt.ArrayLike) -> Array:
     """Return the share of the section's area that is nearer to each point than to any other, shape (points,).
 
+    Nearest is meant in a straight line, also across a core or a corner that points inwards.
+
     Parameters
     ----------
     shape, size
@@ -28,21 +31,20 @@ def shares(shape: str, size: Size, x: npt.ArrayLike, y: npt.ArrayLike) -> Array:
     Returns
     -------
     array
-        Shares that sum to 1; points in one place have equal parts of it. NaN for all where a point lies outside.
+        Shares that sum to 1 within rounding; points in one place have equal parts of it. NaN for all where a point lies
+        outside or a figure is missing.
     """
     px, py = np.atleast_1d(np.asarray(x, dtype=np.float64)), np.atleast_1d(np.asarray(y, dtype=np.float64))
     left, right, bottom, top = (float(side) for side in sections.bounds(shape, size))
-    extent = max(right - left, top - bottom)
-    if not np.all(sections.wall_distance(shape, size, px, py) > -SAME_PLACE * extent):
+    near = SAME_PLACE * max(right - left, top - bottom)
+    if not np.all(sections.wall_distance(shape, size, px, py) > -near):
         return np.full(px.shape, np.nan)
-    places, owner = _places(px, py, SAME_PLACE * extent)
+    places, owner = _places(px, py, near)
     area = _AREA[shape](size)
-    room = np.array([
-        [left - extent, bottom - extent], [right + extent, bottom - extent], [right + extent, top + extent], [left - extent, top + extent],
-    ])
-    found = np.array([area(cell(places, number, room)) for number in range(len(places))])
-    found /= np.bincount(owner)
-    return np.asarray(found[owner] / found[owner].sum())
+    room = np.array([[left, bottom], [right, bottom], [right, top], [left, top]])
+    # Over the whole section, not over the sum of the cells: a cell that is wrong then shows in the sum.
+    found = np.array([area(cell(places, number, room)) for number in range(len(places))]) / area(room)
+    return np.asarray((found / np.bincount(owner))[owner])
 
 
 def _places(x: Array, y: Array, near: float) -> tuple[Array, npt.NDArray[np.intp]]:
@@ -60,29 +62,36 @@ def _places(x: Array, y: Array, near: float) -> tuple[Array, npt.NDArray[np.intp
 def cell(places: Array, number: int, room: Array) -> Array:
     """Return the corners of a point's cell inside a convex room, shape (corners, 2)."""
     own = places[number]
-    others = np.delete(places, number, axis=0)
+    normal = np.delete(places, number, axis=0) - own
+    square = np.sum(np.square(normal), axis=1)
     # The nearest neighbours first: most of the others then cut nothing off.
-    found = room
-    for other in others[np.argsort(np.hypot(*(others - own).T))]:
-        normal = other - own
-        found = clip(found, normal, float(normal @ (own + other)) / 2.0)
-    return found
+    order = np.argsort(square)
+    normal, level = normal[order], square[order] / 2.0
+    found = room - own
+    done = 0
+    while done < len(level):
+        cutting = np.any(normal[done:] @ found.T > level[done:, None], axis=1)
+        if not cutting.any():
+            break
+        done += int(np.argmax(cutting)) + 1
+        found = clip(found, normal[done - 1], float(level[done - 1]))
+    return np.asarray(found + own)
 
 
 def clip(ring: Array, normal: Array, level: float) -> Array:
     """Return the part of a polygon where ``normal . p <= level``; a polygon that is not convex may keep double edges."""
-    if not len(ring):
+    height = (ring @ normal - level).tolist()
+    if not height or max(height) <= 0.0:
         return ring
-    height = ring @ normal - level
-    if np.all(height <= 0.0):
-        return ring
-    after, height_after = np.roll(ring, -1, axis=0), np.roll(height, -1)
-    corners: list[Array] = []
-    for p, q, h, g in zip(ring, after, height.tolist(), height_after.tolist(), strict=True):
+    points = ring.tolist()
+    corners: list[tuple[float, float]] = []
+    for i, (h, g) in enumerate(zip(height, height[1:] + height[:1], strict=True)):
+        (px, py), (qx, qy) = points[i], points[(i + 1) % len(points)]
         if h <= 0.0:
-            corners.append(p)
+            corners.append((px, py))
         if (h < 0.0 < g) or (g < 0.0 < h):
-            corners.append(p + h / (h - g) * (q - p))
+            part = h / (h - g)
+            corners.append((px + part * (qx - px), py + part * (qy - py)))
     return np.array(corners) if corners else np.empty((0, 2))
 
 
@@ -90,8 +99,10 @@ def polygon_area(ring: Array) -> float:
     """Return the area of a polygon, positive counter-clockwise."""
     if len(ring) < 3:
         return 0.0
-    after = np.roll(ring, -1, axis=0)
-    return float(np.sum(ring[:, 0] * after[:, 1] - after[:, 0] * ring[:, 1])) / 2.0
+    # From one of its corners: far from the origin the products would lose the digits of a small polygon.
+    near = ring - ring[0]
+    after = np.roll(near, -1, axis=0)
+    return float(np.sum(near[:, 0] * after[:, 1] - after[:, 0] * near[:, 1])) / 2.0
 
 
 def disk_area(ring: Array, radius: float) -> float:
@@ -99,30 +110,33 @@ def disk_area(ring: Array, radius: float) -> float:
 
     Each side with the origin makes a triangle; what the disk leaves of it is a triangle or a sector.
     """
-    after = np.roll(ring, -1, axis=0)
-    return float(sum(_wedge(p, q, radius) for p, q in zip(ring, after, strict=True)))
+    points = [(float(px), float(py)) for px, py in ring.tolist()]
+    return math.fsum(_wedge(p, q, radius) for p, q in zip(points, points[1:] + points[:1], strict=True))
 
 
-def _wedge(p: Array, q: Array, radius: float) -> float:
+Point = tuple[float, float]
+
+
+def _wedge(p: Point, q: Point, radius: float) -> float:
     """Return the part of the triangle (origin, p, q) that lies in the disk."""
-    along = q - p
-    a, b, c = float(along @ along), float(p @ along), float(p @ p) - radius * radius
+    along = (q[0] - p[0], q[1] - p[1])
+    a, b, c = along[0] ** 2 + along[1] ** 2, p[0] * along[0] + p[1] * along[1], p[0] ** 2 + p[1] ** 2 - radius * radius
     if a == 0.0:
         return 0.0
     under = b * b - a * c
-    if under <= 0.0:
-        return radius * radius * _angle(p, q) / 2.0
-    root = np.sqrt(under)
+    root = math.sqrt(under) if under > 0.0 else 0.0
     first, last = max((-b - root) / a, 0.0), min((-b + root) / a, 1.0)
-    if first >= last:
+    if under <= 0.0 or first >= last:
         return radius * radius * _angle(p, q) / 2.0
-    s, t = p + first * along, p + last * along
-    inside = float(s[0] * t[1] - s[1] * t[0]) / 2.0
+    s = (p[0] + first * along[0], p[1] + first * along[1])
+    # An end inside the disk is taken as it is: next to the origin p + (q - p) may differ from q enough to turn its angle by anything.
+    t = q if last == 1.0 else (p[0] + last * along[0], p[1] + last * along[1])
+    inside = (s[0] * t[1] - s[1] * t[0]) / 2.0
     return radius * radius * (_angle(p, s) + _angle(t, q)) / 2.0 + inside
 
 
-def _angle(p: Array, q: Array) -> float:
-    return float(np.arctan2(p[0] * q[1] - p[1] * q[0], p @ q))
+def _angle(p: Point, q: Point) -> float:
+    return math.atan2(p[0] * q[1] - p[1] * q[0], p[0] * q[0] + p[1] * q[1])
 
 
 Measure = Callable[[Array], float]
@@ -130,7 +144,7 @@ Measure = Callable[[Array], float]
 
 def _ellipse(size: Size) -> Measure:
     half = np.array([float(v) for v in sections.extent("ellipse", size)]) / 2.0
-    return lambda ring: disk_area(ring / half, 1.0)
+    return lambda ring: disk_area(ring / half, 1.0) * float(half.prod())
 
 
 def _rectangle(size: Size) -> Measure:
