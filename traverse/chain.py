@@ -16,10 +16,12 @@ import numpy as np
 import numpy.typing as npt
 
 from traverse.methods import Constants
-from traverse.physics import combustion, gas, mixture, moist_air, pitot, sections, stack_moisture
+from traverse.physics import combustion, gas, humid_air, mixture, moist_air, pitot, sections, stack_moisture
+from traverse.physics.probe import Calibrated, at_points
 from traverse.units import convert
 
 Array = npt.NDArray[np.float64]
+Equation = Literal["ideal", "cipm-2007", "virial"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -45,7 +47,8 @@ class StackSetting:
 class Setting:
     """What selects the equations. None of it is uncertain, so none of it is an array.
 
-    ``reference`` is ('conditions', temperature [K], pressure [Pa]), ('density', density [kg/m3], 0) or None.
+    ``reference`` is ('conditions', temperature [K], pressure [Pa]), ('density', density [kg/m3], 0) or None. ``equation`` is that
+    of humid air, for the density at every point and for saturation; a method with constants of its own takes the ideal gas.
     """
 
     shape: str
@@ -60,6 +63,8 @@ class Setting:
     reference: tuple[str, float, float] | None = None
     dimensions: tuple[str, ...] = field(default=("diameter",))
     stack: StackSetting | None = None
+    probe: Calibrated | None = None
+    equation: Equation = "ideal"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -79,7 +84,8 @@ def evaluate(inputs: Mapping[str, Array], setting: Setting) -> Flow:
         ``differential_pressure`` [Pa], ``root_shift`` [Pa^0.5], ``temperature`` [K], ``static`` [Pa gauge],
         ``barometric`` [Pa], ``yaw`` [rad], ``weight``, ``coefficient``, ``water`` (in the form ``setting.humidity``),
         ``moisture_shift``, the dry fractions (wet ones of a mixture), ``density`` [kg/m3], ``density_temperature`` [K],
-        ``density_pressure`` [Pa], ``molar_mass`` [g/mol], ``point_factor``, ``wall_factor``, ``profile_factor``, and the dimensions of the
+        ``density_pressure`` [Pa], ``molar_mass`` [g/mol], of a calibrated probe ``coefficient_shift``, ``pitch`` [rad] and
+        ``pitch_pressure`` [Pa], ``point_factor``, ``wall_factor``, ``profile_factor``, and the dimensions of the
         section by name [m].
     setting : Setting
         Which equations.
@@ -145,7 +151,7 @@ def _moisture(inputs: Mapping[str, Array], setting: Setting, temperature: Array,
         )
         return moist_air.mole_fraction("moisture", found, temperature, pressure)
     form = "moisture" if setting.humidity == "combustion" else setting.humidity
-    return moist_air.mole_fraction(form, inputs["water"], temperature, pressure)
+    return humid_air.mole_fraction(setting.equation, form, inputs["water"], temperature, pressure)
 
 
 def roots(differential_pressure: Array, *, signed: bool) -> Array:
@@ -216,22 +222,35 @@ def _pointwise(
         density = inputs["density"] + 0.0 * inputs["temperature"]
     else:
         density = gas.density(pressure, matter["molar_mass"], inputs["temperature"])
+    real = compressibility(inputs, setting, matter)
+    if real is not None:
+        density = density * (gas.R / humid_air.GAS_CONSTANT[setting.equation]) / real
     impact = np.square(root)
-    if setting.compressible:
-        speed = pitot.velocity(
-            impact, density, inputs["coefficient"], static_pressure=pressure,
-            ratio_of_specific_heats=ratio_of_specific_heats(inputs, setting, matter, mean["temperature"]),
-        )
-    else:
-        speed = pitot.velocity(impact, density, inputs["coefficient"])
-    velocity = np.copysign(speed, root) * np.cos(inputs["yaw"]) * inputs["point_factor"]
+    ratio = ratio_of_specific_heats(inputs, setting, matter, mean["temperature"]) if setting.compressible else 1.4
+
+    def speed(coefficient: Array) -> Array:
+        if not setting.compressible:
+            return pitot.velocity(impact, density, coefficient)
+        return pitot.velocity(impact, density, coefficient, static_pressure=pressure, ratio_of_specific_heats=ratio)
+
+    own = at_points(inputs, setting.probe, speed, exact=not setting.compressible)
+    velocity = np.copysign(own["speed"], root) * np.cos(inputs["yaw"]) * np.cos(own["pitch"]) * inputs["point_factor"]
     weighted = inputs["weight"] * velocity
-    flow = {"velocity": velocity, "density": density, "mean_velocity": _sum(weighted), "flux": _sum(weighted * density)}
+    flow = {"velocity": velocity, "density": density, "mean_velocity": _sum(weighted), "flux": _sum(weighted * density), **own}
     if setting.reference is not None:
         kind, first, second = setting.reference
-        ratio = density / first if kind == "density" else pressure / second * (first / inputs["temperature"])
-        flow["standard"] = _sum(weighted * ratio)
+        standard = density / first if kind == "density" else pressure / second * (first / inputs["temperature"])
+        # An amount of gas stands for its volume as an ideal gas at the standard conditions.
+        flow["standard"] = _sum(weighted * (standard if real is None or kind == "density" else standard / real))
     return flow
+
+
+def compressibility(inputs: Mapping[str, Array], setting: Setting, matter: Mapping[str, Array]) -> Array | None:
+    """Return the compressibility factor of humid air at every point, None for an ideal gas. [1]"""
+    if setting.equation == "ideal":
+        return None
+    pressure = inputs["barometric"] + inputs["static"]
+    return humid_air.compressibility(setting.equation, inputs["temperature"], pressure, matter["moisture"])
 
 
 def _own_units(
@@ -248,13 +267,17 @@ def _own_units(
     temperature = _own_temperature(mean["temperature"], own)
     local = temperature if setting.arithmetic == "root-mean" else _own_temperature(inputs["temperature"], own)
     absolute = _own(inputs["barometric"], own.pressure) + _own(mean["static"], own.head) / own.water_over_mercury
-    factor = own.velocity_constant * inputs["coefficient"] * np.sqrt(local / (absolute * matter["molar_mass"]))
     head = root * np.sqrt(convert(1.0, own.head))
-    speed = factor * head / convert(1.0, own.velocity)
-    velocity = speed * np.cos(inputs["yaw"]) * inputs["point_factor"]
+
+    def speed(coefficient: Array) -> Array:
+        factor = own.velocity_constant * coefficient * np.sqrt(local / (absolute * matter["molar_mass"]))
+        return np.asarray(factor * head / convert(1.0, own.velocity))
+
+    turned = at_points(inputs, setting.probe, speed, exact=True)
+    velocity = turned["speed"] * np.cos(inputs["yaw"]) * np.cos(turned["pitch"]) * inputs["point_factor"]
     density = gas.density(mean["pressure"], matter["molar_mass"], mean["temperature"])
     mean_velocity = _sum(inputs["weight"] * velocity)
-    flow = {"velocity": velocity, "density": density + 0.0 * velocity, "mean_velocity": mean_velocity}
+    flow = {"velocity": velocity, "density": density + 0.0 * velocity, "mean_velocity": mean_velocity, **turned}
     flow["flux"] = mean_velocity * density[..., 0]
     if setting.reference is not None:
         kind, first, second = setting.reference
@@ -309,6 +332,8 @@ def _totals(
             dry = dry * quantities["molar_mass_dry"] / quantities["molar_mass"]
         quantities["dry_standard_flow"] = standard * dry
     points = {"velocity": flow["velocity"], "density": flow["density"], "root": root}
+    if setting.probe is not None:
+        points |= {name: flow[name] for name in ("coefficient", "pitch", "speed")}
     return Flow(points=points, quantities=quantities)
 
 

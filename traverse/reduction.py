@@ -16,7 +16,21 @@ from traverse.methods import Method
 from traverse.model import UNREAD, Array, Finding, Job, Reference, Run
 from traverse.quantities import BY_NAME, NAMES
 from traverse.result import DesignComparison, Measured, Reduction, RunResult, Spread
-from traverse.treatment import MISSING_RULES, Treated, derived_gas, inputs, matter_findings, refuse_impossible, setting, treat
+from traverse.treatment import (
+    MISSING_RULES,
+    Treated,
+    air_findings,
+    compressibility_factor,
+    correction_findings,
+    derived_gas,
+    inputs,
+    matter_findings,
+    probe_findings,
+    refuse_impossible,
+    refuse_outside,
+    setting,
+    treat,
+)
 from traverse.uncertainty import directions, propagation
 from traverse.uncertainty.runs import of_mean
 from traverse.units import parse
@@ -86,19 +100,25 @@ def _run(job: Job, run: Run, method: Method) -> RunResult:
     signed = job.policies.negative == "signed"
     arrays, equations = inputs(job, run, method, treated), setting(job, run, method, signed=signed)
     flow = evaluate(arrays, equations)
+    refuse_outside(run, treated.counted, arrays, flow.points)
     refuse_impossible(flow.quantities, run)
+    # What the probe's calibration gave at every point is what a percentage of the coefficient is a percentage of.
+    arrays |= {name: flow.points[name] for name in ("coefficient",) if name in flow.points}
     rows = directions.rows(job, run, arrays, treated.counted)
     moved = propagation.deviations(rows, arrays, equations)
     quantities, notes = _quantities(job, method, flow, moved, rows)
     treatments, findings = _negative(job, run, method)
     missing, missing_findings = _missing(job, run, method)
     findings += missing_findings + _integration(run, treated) + matter_findings(run, arrays, equations)
+    findings += air_findings(run, arrays, equations) + probe_findings(run, treated.counted, flow.points)
+    findings += correction_findings(job.corrections, run, job.layout, job.plane.section, arrays, flow, treated.counted)
     result = RunResult(
         run=run, quantities=quantities, notes=notes, treated=treated, velocity=_point(flow.points["velocity"], job),
         density=_point(flow.points["density"], job),
         budget={name: propagation.budget(rows, moved, name) for name in flow.quantities} if rows else {},
         checks=(), treatments=treatments, missing=missing, exact=_exact(job, run, method, treated, signed), findings=findings,
-        gas=derived_gas(run, arrays, equations),
+        gas=derived_gas(run, arrays, equations) | compressibility_factor(arrays, equations),
+        probe={name: _point(flow.points[name], job) for name in ("coefficient", "pitch", "speed") if name in flow.points},
     )
     return replace(result, checks=checks.over_run(job, method, result))
 
@@ -223,7 +243,7 @@ def _finite(flow: Flow, name: str) -> bool:
 
 def _exact(job: Job, run: Run, method: Method, treated: Treated, signed: bool) -> dict[str, float]:
     """Return what the exact physics gives for the same readings and the same standard conditions."""
-    plain = replace(methods.get("exact"), uses_yaw=method.uses_yaw)
+    plain = replace(methods.get("exact"), uses_yaw=method.uses_yaw, uses_pitch=method.uses_pitch)
     flow = evaluate(inputs(job, run, plain, treated), setting(job, run, plain, signed=signed))
     return {name: float(flow.quantities[name]) for name in (*BESIDE, "molar_mass", "density") if _finite(flow, name)}
 

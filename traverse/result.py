@@ -95,7 +95,11 @@ class CheckOutcome:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class RunResult:
-    """One run's result. Point arrays have shape (points,), in SI."""
+    """One run's result. Point arrays have shape (points,), in SI.
+
+    ``probe`` holds what the calibration of the probe gave at every point: coefficient, pitch [rad] and the velocity along its
+    direction (``speed``); empty where one coefficient serves all.
+    """
 
     run: Run
     quantities: Mapping[str, Measured | None]
@@ -110,6 +114,7 @@ class RunResult:
     exact: Mapping[str, float]
     findings: tuple[Finding, ...] = ()
     gas: Mapping[str, float] = field(default_factory=dict)
+    probe: Mapping[str, Array] = field(default_factory=dict)
 
     def value(self, name: str) -> float:
         """Return a quantity's value; NaN where the job cannot give it."""
@@ -234,6 +239,7 @@ def _points(job: Job, result: RunResult) -> list[dict[str, Any]]:
             "density": finite(float(result.density[i])) if counted else None,
             "velocity": finite(float(result.velocity[i])) if counted else None,
             "status": readings.status[i], "text": readings.text[i], "rule": treated.rule[i],
+            **({name: finite(float(result.probe[name][i])) for name in ("coefficient", "pitch")} if result.probe and counted else {}),
         })
     return rows
 

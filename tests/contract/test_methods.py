@@ -10,7 +10,7 @@ from traverse import checks, methods, tables
 from traverse.units import parse
 
 FLUE = {"kind": "flue-gas", "oxygen": "7 %", "carbon_dioxide": "12 %", "moisture": "10 %", "density": None}
-CONTRACT = ("epa-2", "epa-2c", "epa-2g", "exact", "iso-3966", "iso-10780", "en-16911-1", "en-12599", "ashrae-111", "amca-203", "jis-z-8808", "as-4323-1")
+CONTRACT = ("epa-2", "epa-2c", "epa-2f", "epa-2g", "exact", "iso-3966", "iso-10780", "en-16911-1", "en-12599", "ashrae-111", "amca-203", "jis-z-8808", "as-4323-1")
 
 
 def job(name, system, **plane):

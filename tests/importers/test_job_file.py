@@ -102,11 +102,7 @@ def test_a_bare_number_for_a_percentage_is_told_how_to_write_it(write, bare, tol
         ("readings", 'file = "r.csv"\nform = "log"'),
         ("readings", 'file = "r.csv"\nsheet = "x"'),
         ("readings", 'file = "r.csv"\nmatrix = "points down"'),
-        ("corrections", "displacement = true"),
         ("corrections", "layout = true"),
-        ("pitot", 'type = "two-dimensional"'),
-        ("pitot", 'type = "three-dimensional"'),
-        ("pitot", 'calibration = "p.csv"'),
     ],
 )
 def test_a_later_capability_is_refused_by_name(write, table, body):

@@ -22,7 +22,8 @@ def half_unit(printed):
 
 
 def reduced(case, folder):
-    (folder / "readings.csv").write_text(case["readings"], encoding="utf-8")
+    for name, text in {"readings.csv": case["readings"], **case.get("files", {})}.items():
+        (folder / name).write_text(text, encoding="utf-8")
     (folder / "job.toml").write_text(jobs.text(case["job"]), encoding="utf-8")
     return traverse.reduce(traverse.load(folder / "job.toml")).to_dict()
 

@@ -38,6 +38,27 @@ ULTIMATE = {"carbon": "64 %", "hydrogen": "4.5 %", "oxygen": "7.5 %", "nitrogen"
 BULBS = FLUE | {"moisture": None, "wet_bulb": "58 degC"}
 MIXED = {"kind": "mixture", "density": None, "components": {"methane": "12 %", "hydrogen": "3 %", "ammonia": "2 %", "nitric_oxide": "1 %",
                                                            "water": "9 %", "rest": "air"}}
+CURVE = "velocity [ft/min],coefficient\n1000,0.83\n1500,0.838\n2200,0.845\n4000,0.848\n"
+PITCH, FALLING = ("pitch [deg],F1,F2\n" + "".join(f"{p},{sign * (0.03 * p + 0.01)},{0.95 - 0.0001 * p * p}\n" for p in range(-30, 31, 5))
+                  for sign in (1, -1))
+PAIRS = "side,standard_pressure [inH2O],s_type_pressure [inH2O]\n" + "".join(f"{n},0.5,{p}\n" for n in "AB" for p in (0.68, 0.682, 0.684))
+THREE = "line,point,P1-P2 [Pa],P4-P5 [mmH2O],yaw [deg],temperature [degF]\n" + "".join(
+    f"{n},{k},{150 + 10 * k},{(-1) ** k * 1.2 * k},{4 * k - 6},{270 + 10 * k}\n" for n in "AB" for k in (1, 2, 3, 4))
+BY_ANGLE = THREE.replace("P4-P5 [mmH2O]", "pitch [deg]")
+
+
+AT_20 = "line,point,differential_pressure [Pa],temperature [degC]\n" + "".join(
+    f"{n},{k},{50 + k},{19 + k / 3:.2f}\n" for n in "AB" for k in (1, 2, 3, 4))
+
+
+def real(equation, **water):
+    return {"kind": "air", "density": None, "equation": equation, **water}
+
+
+def by(kind, **more):
+    return {"type": kind, "coefficient": None, "calibration": "probe.csv", **more}
+
+
 # Every branch of the working: gas, humidity, method, rules for readings, corrections, reference, uncertainty.
 VARIANTS = {
     "given_density": ({}, jobs.READINGS),
@@ -55,6 +76,17 @@ VARIANTS = {
     "wet_bulb_ice": ({"gas": {"kind": "air", "wet_bulb": "-4 degC", "density": None}, "conditions": {"temperature": "-2 degC"}}, jobs.READINGS),
     "dew_point": ({"gas": {"kind": "air", "dew_point": "8 degC", "density": None}}, jobs.READINGS),
     "humidity_ratio": ({"gas": {"kind": "air", "humidity_ratio": "8 g/kg", "density": None}}, jobs.READINGS),
+    "cipm": ({"gas": real("cipm-2007", relative_humidity="55 %"), "reference": REFERENCE, "uncertainty": UNCERTAIN}, AT_20),
+    "cipm_dew_point": ({"gas": real("real", dew_point="8 degC")}, AT_20),
+    "cipm_frost_point": ({"gas": real("real", dew_point="-6 degC")}, AT_20),
+    "cipm_wet_bulb": ({"gas": real("real", wet_bulb="14 degC"), "reference": {"density": "1.2 kg/m3"}}, AT_20),
+    "virial": ({"gas": real("virial", relative_humidity="80 %"), "conditions": {"temperature": "55 degC"}, "reference": REFERENCE}, jobs.READINGS),
+    "virial_hot": ({"gas": real("real", humidity_ratio="60 g/kg"), "conditions": {"temperature": "240 degC"}}, jobs.READINGS),
+    "virial_boiling": ({"gas": real("real", relative_humidity="20 %"), "conditions": {"temperature": "140 degC"}}, jobs.READINGS),
+    "virial_frost": ({"gas": real("real", relative_humidity="70 %"), "conditions": {"temperature": "-12 degC"}}, jobs.READINGS),
+    "virial_saturated": ({"gas": real("real", relative_humidity="100 %"), "conditions": {"temperature": "62 degC"}}, jobs.READINGS),
+    "virial_wet_bulb": ({"gas": real("real", wet_bulb="31 degC"), "conditions": {"temperature": "70 degC"}}, jobs.READINGS),
+    "real_of_a_method": ({"job": {"method": "epa-2"}, "gas": real("real", relative_humidity="40 %")}, jobs.READINGS),
     "neighbour": ({"readings": {"missing": "neighbour"}, "uncertainty": UNCERTAIN}, MISSING),
     "omit": ({"readings": {"missing": "omit", "negative": "omit", "below": "limit"}}, MISSING),
     "signed": ({"readings": {"missing": "neighbour", "negative": "signed", "below": "zero"}}, MISSING),
@@ -65,6 +97,20 @@ VARIANTS = {
         f"{n},{k},{50 + k},{3 * k},{-10 - k},{70 + k}\n" for n in "AB" for k in (1, 2, 3, 4))),
     "epa_2g": ({"job": {"method": "epa-2g", "units": "us"}, "gas": FLUE, "conditions": HOT, "uncertainty": UNCERTAIN}, YAWED),
     "epa_2g_si": ({"job": {"method": "epa-2g"}, "gas": FLUE, "readings": {"missing": "omit"}}, YAWED.replace(",53,", ",obstructed,")),
+    "curve": ({"pitot": by("pitot-static"), "uncertainty": UNCERTAIN}, jobs.READINGS, CURVE),
+    "curve_plain": ({"job": {"method": "ashrae-111"}, "pitot": by("pitot-static"), "readings": {"negative": "signed"}},
+                    jobs.READINGS.replace("A,2,60", "A,2,0").replace("B,3,63", "B,3,-63"), CURVE),
+    "curve_2": ({"job": {"method": "epa-2"}, "gas": FLUE, "pitot": by("s-type")}, YAWED, CURVE),
+    "curve_2g": ({"job": {"method": "epa-2g", "units": "us"}, "gas": FLUE, "pitot": by("s-type", yaw_offset=["1 deg", "-0.3 deg"])}, YAWED, CURVE),
+    "epa_2f": ({"job": {"method": "epa-2f", "units": "us"}, "gas": FLUE, "pitot": by("three-dimensional"), "corrections": {"turbulence": "6 %"},
+                "uncertainty": UNCERTAIN | {"pitch": "±2 deg", "yaw": "±2 deg", "pitch_pressure": {"resolution": "1 Pa"}}}, THREE, PITCH),
+    "epa_2f_falling": ({"job": {"method": "epa-2f"}, "gas": FLUE, "pitot": by("three-dimensional"), "readings": {"missing": "omit"}},
+                       THREE.replace("A,1,160", "A,1,obstructed"), FALLING),
+    "pitch_read": ({"gas": FLUE, "pitot": by("three-dimensional"), "reference": REFERENCE}, BY_ANGLE, PITCH),
+    "pairs": ({"pitot": by("s-type", leg="mean", standard_coefficient=0.985)}, jobs.READINGS, PAIRS),
+    "legs": ({"pitot": {"type": "s-type", "coefficient": None, "leg": "B", "legs": {"A": 0.838, "B": 0.842}}}, jobs.READINGS),
+    "displacement": ({"pitot": {"head": "6 mm", "stem": "8 mm"}, "corrections": {"displacement": True, "blockage": True, "turbulence": "5 %"}}, jobs.READINGS),
+    "displacement_mckeon": ({"pitot": {"head": "0.25 in"}, "corrections": {"displacement": "mckeon"}, "readings": {"missing": "omit"}}, MISSING),
     "rectangle": ({"plane": {"shape": "rectangle", "diameter": None, "width": "24 in", "height": "16 in", "port_depth": "2 in"},
                    "layout": {"lines": 2, "points": 4, "along": "width"}, "job": {"units": "us"}}, jobs.READINGS),
     "ellipse": ({"plane": {"shape": "ellipse", "diameter": None, "width": "1.4 m", "height": "32 in", "lining": "20 mm", "deposit": "2 mm"},
@@ -120,8 +166,10 @@ def built(result):
 def books(tmp_path_factory):
     """Every example and every variant as a workbook."""
     made = {name: built(traverse.reduce(traverse.load(ROOT / "example_data" / f"{name}.toml"))) for name in EXAMPLES}
-    for name, (change, readings) in VARIANTS.items():
+    for name, (change, readings, *probe) in VARIANTS.items():
         folder = tmp_path_factory.mktemp(name)
+        for text in probe:
+            (folder / "probe.csv").write_text(text, encoding="utf-8")
         made[name] = built(traverse.reduce(traverse.load(jobs.write(folder, change, readings))))
     return made
 

@@ -19,12 +19,18 @@ def decide(view: View) -> Verdict:
         )
     angles = np.abs(np.degrees(view.result.run.readings.yaw))
     worst = int(np.argmax(angles))
+    observed = f"mean {np.mean(angles):.1f} deg, largest {angles[worst]:.1f} deg at {labels(view.result, [worst])}"
+    if epa and view.method.uses_yaw:
+        return Verdict(
+            status="not applicable", observed=observed, criterion=criterion, source=limit["source"],
+            message="The method measures the angle at every point and counts the axial component.",
+        )
     value = float(np.mean(angles)) if epa else float(angles[worst])
     met = value <= allowed + 1e-9 if epa else value < allowed
     overstated = 100 * (1 / np.cos(np.radians(min(value, 89.0))) - 1)
     return Verdict(
         status="pass" if met else "fail",
-        observed=f"mean {np.mean(angles):.1f} deg, largest {angles[worst]:.1f} deg at {labels(view.result, [worst])}",
+        observed=observed,
         criterion=criterion, source=limit["source"],
         message="" if met else "The method may not be used in this flow; use a directional probe or another plane.",
         effect="none" if met else f"flow overstated by up to about {overstated:.2g} % where the yaw is not corrected",

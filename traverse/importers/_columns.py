@@ -26,7 +26,7 @@ _SYNONYMS: dict[str, str] = {
         "vel press, velocity head, velocity head dp, vp, pv, dp, delta p, deltap, Δp, ∆p, Δ p, delta pressure, "
         "dynamic pressure, pd, pdyn, p dyn, pitot pressure, differenzdruck, staudruck, wirkdruck, dynamischer druck, "
         "druckdifferenz, geschwindigkeitsdruck, pression dynamique, pression differentielle, presion dinamica, "
-        "presion diferencial, presion de velocidad",
+        "presion diferencial, presion de velocidad, p1-p2, p12",
     "total": "total, total pressure, tp, ptot, p tot, impact pressure, stagnation pressure, gesamtdruck, pression totale, "
              "presion total",
     "temperature": "temperature, temp, t, ts, tstack, t stack, stack temp, stack temperature, gas temp, gas temperature, "
@@ -37,6 +37,7 @@ _SYNONYMS: dict[str, str] = {
     "yaw": "yaw, yaw angle, swirl, swirl angle, null angle, rotation angle, drall, drallwinkel, gierwinkel, "
            "angle de lacet, angulo de guinada",
     "pitch": "pitch, pitch angle, nickwinkel, angle de tangage, angulo de cabeceo",
+    "pitch_pressure": "pitch pressure, pitch pressure difference, p4-p5, p45, dp45, delta p45",
     "velocity": "velocity, vel, v, speed, air velocity, air speed, gas velocity, airspeed, geschwindigkeit, "
         "luftgeschwindigkeit, stromungsgeschwindigkeit, vitesse, vitesse de l'air, velocidad, velocidad del aire",
     "status": "status, flag, zustand, etat, estado", "reason": "reason, remark, remarks, comment, comments, note, notes, "
@@ -50,7 +51,7 @@ _WEAK = frozenset({"no", "nr", "#", "num", "pos", "position", "row", "repeat", "
 READING = frozenset({"differential_pressure", "velocity", "total"})
 # Columns whose unit must be told: a wrong guess is a wrong flow that looks right.
 NEED_UNIT = frozenset({"differential_pressure", "total", "temperature", "static", "velocity", "depth", "x", "y",
-                       "standard_error"})
+                       "standard_error", "pitch_pressure"})
 _BARE = frozenset({"mm", "in", "cm", '"', "inch", "inches"})
 
 

@@ -8,7 +8,7 @@ from typing import Literal, cast
 from traverse.errors import JobError
 from traverse.importers import _stack_gas
 from traverse.importers._schema import Table
-from traverse.model import COMPONENTS, Finding, Gas, Humidity
+from traverse.model import COMPONENTS, Equation, Finding, Gas, Humidity
 from traverse.units import Stated
 
 HUMIDITY: dict[str, tuple[str, ...]] = {
@@ -19,7 +19,7 @@ HUMIDITY: dict[str, tuple[str, ...]] = {
 _ALL_FORMS = tuple(dict.fromkeys(form for forms in HUMIDITY.values() for form in forms))
 _FLAGS = ("dry", "saturated")
 _OWN: dict[str, tuple[str, ...]] = {
-    "air": (), "flue-gas": (*COMPONENTS, "psychrometer", "fuel", "excess_air", "air_humidity_ratio"),
+    "air": ("equation",), "flue-gas": (*COMPONENTS, "psychrometer", "fuel", "excess_air", "air_humidity_ratio"),
     "given": ("density", "temperature", "pressure", "molar_mass"), "mixture": ("components", "rest"),
 }
 Kind = Literal["air", "flue-gas", "given", "mixture"]
@@ -69,7 +69,7 @@ def build(table: Table) -> tuple[Gas, tuple[Finding, ...]]:
         )
     gas = Gas(kind=kind, humidity=humidity, water=water, ratio_of_specific_heats=ratio)
     if kind == "air":
-        return gas, ()
+        return replace(gas, equation=cast("Equation", table.text("equation") or "ideal")), ()
     if kind == "mixture":
         return _stack_gas.mixture(table, gas)
     return _stack(table, gas) if kind == "flue-gas" else _given(table, gas)

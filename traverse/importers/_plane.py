@@ -1,4 +1,4 @@
-"""[plane], [pitot], [gauge], [conditions], [reference], [design] and [corrections]: tables to records."""
+"""[plane], [gauge], [conditions], [reference], [design] and [corrections]: tables to records."""
 
 from __future__ import annotations
 
@@ -9,8 +9,7 @@ from traverse import tables
 from traverse.errors import JobError
 from traverse.importers import _barometer, _section
 from traverse.importers._schema import Table
-from traverse.methods import Method
-from traverse.model import Conditions, Corrections, Design, Finding, Gauge, Pitot, Plane, Reference, Section
+from traverse.model import Conditions, Corrections, Design, Finding, Gauge, Plane, Reference, Section
 from traverse.units import UNITS, Stated, parse
 
 # Gauge pressures that look like absolute ones. Common practice, no source.
@@ -54,36 +53,6 @@ def units_system(table: Table, section: Section) -> tuple[Literal["si", "us"], t
         level="note", topic="units", setting="[job] units",
         message=f'units is not stated; "{system}" because the section is in {"inches or feet" if inches else "metric units"}.',
     ),)
-
-
-def pitot(table: Table, method: Method) -> tuple[Pitot, tuple[Finding, ...]]:
-    """Return the probe, with the method's default coefficient where it allows one."""
-    kind, findings = table.text("type"), []
-    if kind is None:
-        kind = "pitot-static"
-        findings.append(Finding(
-            level="note", topic="pitot", setting="[pitot] type", message='type is not stated; "pitot-static" was taken.'
-        ))
-    coefficient, source = table.number("coefficient"), "[pitot] coefficient"
-    if coefficient is None:
-        if kind not in method.default_coefficients:
-            raise JobError(
-                "no coefficient", where=table.name,
-                expected=f"the calibrated coefficient; {method.id} has no default for a {kind} tube",
-                how="for example coefficient = 0.84",
-            )
-        coefficient, source = method.default_coefficients[kind], f"default of {method.id} for a {kind} tube"
-        findings.append(Finding(
-            level="note", topic="pitot", setting="[pitot] coefficient",
-            message=f"coefficient is not stated; {coefficient:.2f}, the {source}.",
-        ))
-    stem = table.stated("stem")
-    if stem is not None and not stem.value > 0:
-        raise JobError(f"{stem.text!r}", where=table.where("stem"), expected="a diameter above zero")
-    return Pitot(
-        type=cast("Literal['pitot-static', 's-type']", kind), coefficient=coefficient, coefficient_source=source, stem=stem,
-        head_offset=table.stated("head_offset"),
-    ), tuple(findings)
 
 
 def merge_conditions(base: Table, over: Table | None) -> Table:
@@ -215,8 +184,20 @@ def corrections(table: Table, measured: Plane) -> tuple[Corrections, tuple[Findi
     if turbulence is not None and not 0 <= turbulence.value < 1:
         raise JobError(f"{turbulence.text!r}", where=table.where("turbulence"), expected="a percentage from 0 to below 100 %")
     return Corrections(
-        wall_factor=factor, wall_factor_source=source, turbulence=turbulence, blockage=table.flag("blockage")
+        wall_factor=factor, wall_factor_source=source, turbulence=turbulence, blockage=table.flag("blockage"),
+        displacement=_displacement(table),
     ), findings
+
+
+def _displacement(table: Table) -> Literal["", "macmillan", "mckeon"]:
+    value = table.get("displacement")
+    if value is True:
+        return "macmillan"
+    if value in (None, False):
+        return ""
+    if value not in ("macmillan", "mckeon"):
+        raise JobError(f"{value!r}", where=table.where("displacement"), expected='true, "macmillan" or "mckeon"')
+    return cast("Literal['macmillan', 'mckeon']", value)
 
 
 def _wall_factor(table: Table, measured: Plane) -> tuple[float | None, str, tuple[Finding, ...]]:

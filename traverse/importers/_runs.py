@@ -10,7 +10,7 @@ import numpy as np
 import numpy.typing as npt
 
 from traverse.errors import JobError, ReadingError
-from traverse.importers import _gas, _plane
+from traverse.importers import _gas, _plane, _probe
 from traverse.importers._document import Document, Override
 from traverse.importers._matching import Matched, Plan, match
 from traverse.importers._records import Record
@@ -90,7 +90,7 @@ def _run(
 ) -> tuple[Run, list[Finding]]:
     over: Mapping[str, Table] = override.tables if override else {}
     gas, gas_findings = _gas.build(_gas.merge(document.table("gas"), over.get("gas")))
-    pitot, pitot_findings = _pitot(document.table("pitot"), over.get("pitot"), method)
+    pitot, pitot_findings = _probe.build(_probe.merge(document.table("pitot"), over.get("pitot")), method, document.beside)
     recorded = {column for column in ("temperature", "static") if any(math.isfinite(r.si(column)) for r in records)}
     conditions, state_findings = _plane.conditions(
         _plane.merge_conditions(document.table("conditions"), over.get("conditions")), static_column="static" in recorded,
@@ -101,21 +101,11 @@ def _run(
     filling.findings += [*gas_findings, *pitot_findings, *state_findings, *matched.findings]
     for column in sorted(recorded & set(over["conditions"].values)) if "conditions" in over else ():
         filling.note(column, f"{column} of [[run]] is not used: the readings' column counts", f"[readings.columns] {column}")
-    readings = _readings(filling, conditions, document.table("readings").stated("meter_density"))
+    readings = _readings(filling, conditions, document.table("readings").stated("meter_density"), pitot)
     return Run(name=name, conditions=conditions, gas=gas, pitot=pitot, readings=readings), filling.findings
 
 
-def _pitot(base: Table, over: Table | None, method: Method) -> tuple[Pitot, tuple[Finding, ...]]:
-    """Return the probe of one run; another type does not keep the default's coefficient."""
-    if over is None:
-        return _plane.pitot(base, method)
-    kept = dict(base.values)
-    if "type" in over and over.text("type") != base.text("type"):
-        kept.pop("coefficient", None)
-    return _plane.pitot(Table(over.name, {**kept, **over.values}), method)
-
-
-def _readings(filling: Filling, conditions: Conditions, meter_density: Stated | None) -> Readings:
+def _readings(filling: Filling, conditions: Conditions, meter_density: Stated | None, pitot: Pitot) -> Readings:
     matched = filling.matched
     pressure = filling.values("differential_pressure")
     status = tuple(record.status if record is not None else "missing" for record in matched.records)
@@ -124,7 +114,8 @@ def _readings(filling: Filling, conditions: Conditions, meter_density: Stated | 
     error, root = filling.values("standard_error"), filling.values("mean_root_differential_pressure")
     return Readings(
         differential_pressure=pressure, temperature=_temperature(filling, conditions, columns),
-        static=_static(filling, conditions, columns), yaw=_angle(filling, "yaw"), pitch=_angle(filling, "pitch"),
+        static=_static(filling, conditions, columns), yaw=_yaw(filling, pitot, columns), pitch=_angle(filling, "pitch"),
+        pitch_pressure=_pitch_pressure(filling, pitot, columns),
         status=status, reason=tuple(record.reason if record is not None else "" for record in matched.records),
         line=matched.line, point=matched.point, columns=columns,
         meter_density=meter_density if "velocity" in columns else None,
@@ -232,3 +223,43 @@ def _angle(filling: Filling, name: str) -> Array:
             expected=f"a {name} angle at every point, 0 where it was 0",
         )
     return np.where(recorded, values, 0.0)
+
+
+def _yaw(filling: Filling, pitot: Pitot, columns: Mapping[str, Column]) -> Array:
+    """Return the yaw angles counted from the axis: as read less the offsets of the probe (EPA Method 2G, 8.9.4.2)."""
+    values = _angle(filling, "yaw")
+    if not pitot.yaw_offset:
+        return values
+    offset = sum(stated.value for stated in pitot.yaw_offset)
+    texts = " and ".join(stated.text for stated in pitot.yaw_offset)
+    if "yaw" not in columns:
+        raise JobError(
+            f"a yaw offset of {texts}, and no yaw angle of run {filling.run}", where="[pitot] yaw_offset",
+            expected="a yaw column in the readings",
+        )
+    filling.note("yaw", f"{texts} taken off every yaw angle", "[pitot] yaw_offset")
+    return np.where(filling.unread() & ~np.isfinite(filling.values("yaw")), values, values - offset)
+
+
+def _pitch_pressure(filling: Filling, pitot: Pitot, columns: Mapping[str, Column]) -> Array | None:
+    """Return P4 - P5 of a three-dimensional probe; None where the readings have none, or the pitch was read itself."""
+    if pitot.directional is None:
+        return None
+    if "pitch_pressure" not in columns:
+        if "pitch" not in columns:
+            raise ReadingError(
+                f"no pitch of run {filling.run}", where=filling.table.source.name,
+                expected="a column pitch_pressure (P4-P5), or pitch, beside the differential pressure (P1-P2)",
+            )
+        return None
+    if "pitch" in columns:
+        filling.note("pitch", "the pitch column is not used: pitch_pressure counts", "[readings.columns] pitch_pressure")
+    values = filling.values("pitch_pressure")
+    needed = ~np.isfinite(values) & ~filling.unread()
+    if needed.any():
+        record = filling.matched.records[int(np.flatnonzero(needed)[0])]
+        raise ReadingError(
+            f"no pitch_pressure at {filling.labels(needed)} of run {filling.run}", where=record.where if record else "",
+            expected="P4-P5 at every point, 0 where it was 0",
+        )
+    return values

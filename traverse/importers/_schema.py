@@ -41,7 +41,7 @@ MEASURED = Key(kind="measured", dimension="length")
 FRACTION, LENGTH, TEMPERATURE, PRESSURE = _q("fraction"), _q("length"), _q("temperature"), _q("pressure")
 
 GAS: Mapping[str, Key] = {
-    "kind": _choice("air", "flue-gas", "given", "mixture"),
+    "kind": _choice("air", "flue-gas", "given", "mixture"), "equation": _choice("ideal", "cipm-2007", "virial", "real"),
     "oxygen": FRACTION, "carbon_dioxide": FRACTION, "carbon_monoxide": FRACTION, "sulfur_dioxide": FRACTION,
     "relative_humidity": FRACTION, "moisture": FRACTION, "wet_bulb": TEMPERATURE, "dew_point": TEMPERATURE,
     "humidity_ratio": _q("humidity ratio"), "dry": FLAG, "saturated": FLAG,
@@ -56,14 +56,17 @@ CONDITIONS: Mapping[str, Key] = {
     "temperature": TEMPERATURE,
 }
 PITOT: Mapping[str, Key] = {
-    "type": _choice("pitot-static", "s-type", later=("two-dimensional", "three-dimensional")), "coefficient": NUMBER,
-    "stem": LENGTH, "head_offset": LENGTH,
+    "type": _choice("pitot-static", "s-type", "two-dimensional", "three-dimensional"), "coefficient": NUMBER,
+    "legs": Key(kind="any"), "leg": _choice("A", "B", "mean"), "calibration": TEXT, "standard_coefficient": NUMBER,
+    "stem": LENGTH, "head_offset": LENGTH, "head": LENGTH, "hole": LENGTH,
+    "yaw_offset": Key(kind="quantity or list", dimension="angle"),
 }
 # Canonical columns of the readings and the dimension of their unit ('' for labels and words).
 COLUMNS: Mapping[str, str] = {
     "run": "", "line": "", "point": "", "depth": "length", "x": "length", "y": "length", "weight": "number",
     "differential_pressure": "pressure", "total": "pressure", "temperature": "temperature", "static": "pressure",
-    "yaw": "angle", "pitch": "angle", "velocity": "velocity", "status": "", "reason": "", "standard_error": "pressure",
+    "yaw": "angle", "pitch": "angle", "pitch_pressure": "pressure",
+    "velocity": "velocity", "status": "", "reason": "", "standard_error": "pressure",
     "mean_root_differential_pressure": "root of pressure",
 }
 SCHEMA: Mapping[str, Mapping[str, Key]] = {
@@ -102,14 +105,12 @@ SCHEMA: Mapping[str, Mapping[str, Key]] = {
     "design": {"actual_flow": _q("flow", basis="actual"), "velocity": _q("velocity"), "tolerance": TEXT, "profile": NUMBER},
     "gauge": {"range": PRESSURE, "division": PRESSURE},
     "wall_effects": {"kind": _choice("partial", "complete"), "file": TEXT, "run": TEXT},
-    "corrections": {"wall_factor": Key(kind="any"), "turbulence": FRACTION, "blockage": FLAG},
+    "corrections": {"wall_factor": Key(kind="any"), "turbulence": FRACTION, "blockage": FLAG, "displacement": Key(kind="any")},
 }
 # Keys of the contract that this version does not act on: refused, with what there is instead.
 LATER: Mapping[str, str] = {
-    "pitot.calibration": 'coefficient, a number such as 0.84',
     "readings.sheet": "text files: CSV, TSV or semicolon-separated", "readings.matrix": 'long tables, form = "long"',
-    "corrections.displacement": "wall_factor, turbulence and blockage",
-    "corrections.layout": "wall_factor, turbulence and blockage",
+    "corrections.layout": "wall_factor, turbulence, blockage and displacement",
 }
 RUN_TABLES: tuple[str, ...] = ("conditions", "gas", "pitot")
 

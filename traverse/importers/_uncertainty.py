@@ -46,6 +46,8 @@ INPUTS: Mapping[str, Input] = {
     "humidity_ratio": Input("humidity ratio", "relative"), "density": Input("density", "relative"),
     "molar_mass": Input("molar mass", "relative"), "dimensions": Input("length", "relative"),
     "position": Input("length", "refused", single=False), "yaw": Input("angle", "refused", single=False),
+    "pitch": Input("angle", "refused", single=False), "pitch_pressure": Input("pressure", "relative", single=False),
+    "alignment": Input("pressure", "relative"), "static_holes": Input("pressure", "relative"),
     "layout": Input("number", "relative"),
     **{name: Input("fraction", "points") for name in SPECIES if name not in (*COMPONENTS, "water")},
     "excess_air": Input("fraction", "points"), "air_humidity_ratio": Input("humidity ratio", "relative"),
@@ -147,6 +149,8 @@ def _refuse_absent(name: str, where: str, runs: Sequence[Run]) -> None:
             raise JobError(f"run {run.name} states {held}, not {name}", where=where, expected="an input the job has")
         if (name in SPECIES and name not in gas.composition) or _lacks(name, gas):
             raise JobError(f"run {run.name} states no {name}", where=where, expected="an input the job has")
+        if (name == "pitch" and run.pitot.directional is None) or (name == "pitch_pressure" and run.readings.pitch_pressure is None):
+            raise JobError(f"run {run.name} has no {name} that acts", where=where, expected="an input the job has")
         if name in {"density", "molar_mass"} and getattr(gas, name) is None:
             raise JobError(f"run {run.name} states no {name}", where=where, expected="an input the job has")
 

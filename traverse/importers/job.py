@@ -9,7 +9,7 @@ from typing import Literal, cast
 
 from traverse import methods
 from traverse.errors import JobError
-from traverse.importers import _gas, _layout, _plane, _quality, _runs, _uncertainty, _wall_effects
+from traverse.importers import _gas, _layout, _plane, _probe, _quality, _runs, _uncertainty, _wall_effects
 from traverse.importers._document import Document
 from traverse.importers._labels import point_number
 from traverse.importers._matching import Plan
@@ -43,7 +43,7 @@ def load(document: Document, readings: ReadReadings, points: ReadPoints, rows: _
     frame = _frame(document, table, readings, points)
     corrections, correction_findings = _plane.corrections(document.table("corrections"), frame.plane)
     runs, run_findings = _runs.build(document, table, _plan(frame), frame.method, frame.units)
-    _refuse_blockage(corrections, runs)
+    _probe.refuse_unsized(corrections, runs)
     corrections, sources, wall_findings = _wall(document, frame, runs, corrections, rows)
     return Job(
         title=_title(document), date=document.table("job").get("date"), method=frame.method.id, units=frame.units,
@@ -51,7 +51,8 @@ def load(document: Document, readings: ReadReadings, points: ReadPoints, rows: _
         quality=_quality.build(document.quality, tuple(run.name for run in runs), frame.layout),
         uncertainties=_uncertainty.build(document.uncertainty, runs),
         design=_plane.design(document.table("design"), frame.plane.section),
-        corrections=corrections, policies=_policies(document), sources=(*_sources(frame, table), *sources),
+        corrections=corrections, policies=_policies(document),
+        sources=(*_sources(frame, table), *_probe.sources(run.pitot for run in runs), *sources),
         findings=tuple(dict.fromkeys((*frame.findings, *table.findings, *correction_findings, *run_findings, *wall_findings))),
     )
 
@@ -62,9 +63,9 @@ def load_setup(document: Document, readings: ReadReadings, points: ReadPoints) -
     findings = list(frame.findings)
     pitot = gas = conditions = None
     if document.table("pitot").values:
-        coefficient = "coefficient" in document.table("pitot")
+        coefficient = any(way in document.table("pitot") for way in _probe.WAYS)
         if coefficient or (document.table("pitot").text("type") or "pitot-static") in frame.method.default_coefficients:
-            pitot, found = _plane.pitot(document.table("pitot"), frame.method)
+            pitot, found = _probe.build(document.table("pitot"), frame.method, document.beside)
             findings += found
     if document.table("gas").values:
         gas, found = _gas.build(document.table("gas"))
@@ -76,7 +77,8 @@ def load_setup(document: Document, readings: ReadReadings, points: ReadPoints) -
     return Setup(
         title=_title(document), date=document.table("job").get("date"), method=frame.method.id, units=frame.units,
         plane=frame.plane, layout=frame.layout, pitot=pitot, gas=gas, conditions=conditions,
-        design=_plane.design(document.table("design"), frame.plane.section), sources=frame.sources,
+        design=_plane.design(document.table("design"), frame.plane.section),
+        sources=(*frame.sources, *_probe.sources([pitot] if pitot else [])),
         findings=tuple(dict.fromkeys(findings)), gauge=_plane.gauge(document.table("gauge")),
     )
 
@@ -182,11 +184,3 @@ def _policies(document: Document) -> Policies:
         missing=cast("Literal['error', 'neighbour', 'field', 'omit']", table.text("missing") or "error"),
         below=cast("Literal['half', 'zero', 'limit']", table.text("below") or "half"),
     )
-
-
-def _refuse_blockage(corrections: Corrections, runs: tuple[Run, ...]) -> None:
-    if corrections.blockage and any(run.pitot.stem is None for run in runs):
-        raise JobError(
-            "blockage = true without the stem of the probe", where="[corrections] blockage",
-            expected="the diameter of the stem", how='[pitot] stem = "1 in"',
-        )

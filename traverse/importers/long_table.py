@@ -18,7 +18,7 @@ from traverse.model import Finding, Source
 from traverse.units import Stated, Unit
 
 # Columns of plain numbers beside the pressure; weight and places are for custom layouts.
-_PLAIN = ("depth", "x", "y", "weight", "temperature", "static", "yaw", "pitch", "standard_error",
+_PLAIN = ("depth", "x", "y", "weight", "temperature", "static", "yaw", "pitch", "pitch_pressure", "standard_error",
           "mean_root_differential_pressure")
 _LABELS = ("run", "line", "point")
 

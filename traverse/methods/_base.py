@@ -43,8 +43,10 @@ class Method:
         Point velocities averaged over the area, or the mean root with one mean density.
     compressible : bool
         Whether the isentropic form is used.
-    uses_yaw : bool
-        Whether a measured yaw angle reduces a point velocity to its axial component.
+    uses_yaw, uses_pitch : bool
+        Whether a measured yaw angle, and the pitch of a three-dimensional probe, reduce a point velocity to its axial component.
+    probes : tuple of str
+        The types of probe that the method is for; empty where it leaves them open.
     constants : mapping of unit system to Constants
         Empty for a method that computes with modern physical constants.
     default_coefficients : mapping of pitot type to number
@@ -69,6 +71,8 @@ class Method:
     arithmetic: Literal["pointwise", "root-mean"] = "pointwise"
     compressible: bool = True
     uses_yaw: bool = False
+    uses_pitch: bool = False
+    probes: tuple[str, ...] = ()
     constants: Mapping[str, Constants] = field(default_factory=lambda: MappingProxyType({}))
     default_coefficients: Mapping[str, float] = field(default_factory=lambda: MappingProxyType({}))
     standard_air: Mapping[str, str] = field(default_factory=lambda: MappingProxyType({}))

@@ -11,7 +11,8 @@ METHOD = replace(
     source="40 CFR 60 Appendix A-2 Method 2G, eqs. 2G-6, 2G-8 to 2G-10; running text read in part, equations and constants from memory",
     arithmetic="pointwise",
     uses_yaw=True,
-    checks=(*EPA_2.checks, "zero-drift", "calibration-dates"),
+    checks=("negative-readings", "gauge-sensitivity", "point-count", "straight-lengths", "saturation", "leak-check", "zero-drift",
+            "calibration-dates", "directional-velocity"),
     site_rule="epa-2",
     count_rule="epa-2",
     notes=(

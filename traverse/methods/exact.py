@@ -7,6 +7,7 @@ METHOD = Method(
     title="Exact physics, point by point",
     source="Bernoulli in its isentropic form, ideal-gas law with CODATA R; no test method's own rounding",
     uses_yaw=True,
+    uses_pitch=True,
     checks=("negative-readings", "share-above-tenth", "saturation"),
     notes=("No standard conditions of its own: standard flows need [reference].",),
 )

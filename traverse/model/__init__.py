@@ -3,7 +3,7 @@
 Records validate what they hold and derive what follows from it; nothing else. Arrays are float64 and read-only.
 """
 
-from traverse.model._base import Array, Finding, frozen
+from traverse.model._base import Array, Finding, Source, frozen
 from traverse.model._job import (
     COMPONENTS,
     NULL,
@@ -15,22 +15,22 @@ from traverse.model._job import (
     Corrections,
     Design,
     Distribution,
+    Equation,
     Gas,
     Gauge,
     Humidity,
     Job,
-    Pitot,
     Policies,
     Readings,
     Reference,
     Run,
     Setup,
-    Source,
     Status,
     Uncertainties,
 )
 from traverse.model._matter import Fuel, MoistureTrain
 from traverse.model._place import Layout, Plane, Section, Shape
+from traverse.model._probe import Calibration, Curve, Directional, Leg, Pairs, Pitot, ProbeType
 from traverse.model._quality import CALIBRATED, Leak, Quality
 
 __all__ = [
@@ -40,12 +40,16 @@ __all__ = [
     "STATUSES",
     "UNREAD",
     "Array",
+    "Calibration",
     "Column",
     "Component",
     "Conditions",
     "Corrections",
+    "Curve",
     "Design",
+    "Directional",
     "Distribution",
+    "Equation",
     "Finding",
     "Fuel",
     "Gas",
@@ -54,10 +58,13 @@ __all__ = [
     "Job",
     "Layout",
     "Leak",
+    "Leg",
     "MoistureTrain",
+    "Pairs",
     "Pitot",
     "Plane",
     "Policies",
+    "ProbeType",
     "Quality",
     "Readings",
     "Reference",

@@ -1,4 +1,4 @@
-"""What every record of a job shares: read-only arrays, and the finding."""
+"""What every record of a job shares: read-only arrays, the file it came from, and the finding."""
 
 from __future__ import annotations
 
@@ -30,3 +30,12 @@ class Finding:
     message: str
     where: str = ""
     setting: str = ""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Source:
+    """A file the job was read from: shown name, SHA-256, and its text verbatim where it is text."""
+
+    name: str
+    sha256: str
+    text: str = ""

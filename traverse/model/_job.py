@@ -10,10 +10,11 @@ from typing import Literal
 
 import numpy as np
 
-from traverse.errors import DomainError, JobError, ReadingError
-from traverse.model._base import Array, Finding, frozen
+from traverse.errors import DomainError, ReadingError
+from traverse.model._base import Array, Finding, Source, frozen
 from traverse.model._matter import Fuel, MoistureTrain
 from traverse.model._place import Layout, Plane, check_ports
+from traverse.model._probe import Pitot
 from traverse.model._quality import Quality
 from traverse.units import Stated
 
@@ -26,31 +27,10 @@ NULL: frozenset[str] = frozenset({"missing", "obstructed", "plugged", "excluded"
 _EMPTY: Mapping[str, Stated] = MappingProxyType({})
 
 
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class Pitot:
-    """The probe. ``coefficient`` multiplies the velocity: v = C sqrt(2 dp / density).
-
-    ``head_offset`` is how far the place from which marks are counted lies ahead of the sensing openings, such as the end
-    of the probe: every mark is that much farther away.
-    """
-
-    type: Literal["pitot-static", "s-type"]
-    coefficient: float
-    coefficient_source: str
-    stem: Stated | None = None
-    head_offset: Stated | None = None
-
-    def __post_init__(self) -> None:
-        if not 0.3 <= self.coefficient <= 1.5:
-            raise JobError(
-                f"a coefficient of {self.coefficient:g}", where="[pitot] coefficient",
-                expected="a number between 0.3 and 1.5 (about 0.84 for an S-type, about 1 for a pitot-static tube)",
-            )
-
-
 Humidity = Literal[
     "relative_humidity", "wet_bulb", "dew_point", "humidity_ratio", "dry", "moisture", "saturated", "none", "moisture_train", "combustion",
 ]
+Equation = Literal["ideal", "cipm-2007", "virial", "real"]
 COMPONENTS = ("oxygen", "carbon_dioxide", "carbon_monoxide", "sulfur_dioxide")
 
 
@@ -60,7 +40,8 @@ class Gas:
 
     ``humidity`` names the form the water was stated in and ``water`` its SI value ('none': not stated, only for a
     given gas; 'dry': none present; 'combustion': it follows from the fuel). The composition of a mixture is wet and leaves
-    its water out; ``rest`` is the gas that makes up what is not stated.
+    its water out; ``rest`` is the gas that makes up what is not stated. ``equation`` is that of humid air: 'real' takes CIPM-2007 where
+    it holds and the virial equation elsewhere.
     """
 
     kind: Literal["air", "flue-gas", "given", "mixture"]
@@ -76,6 +57,7 @@ class Gas:
     train: MoistureTrain | None = None
     fuel: Fuel | None = None
     rest: str = ""
+    equation: Equation = "ideal"
 
     def fraction(self, name: str) -> float:
         """Return a component's dry mole fraction; 0 where none was stated."""
@@ -118,8 +100,9 @@ class Readings:
     """One run's readings over the points of the plan, in SI. Arrays have shape (points,).
 
     ``differential_pressure`` [Pa] is NaN where nothing was read; for a reading below range it is the limit.
-    ``temperature`` [K], ``static`` [Pa, gauge], ``yaw`` and ``pitch`` [rad] are complete. ``columns`` keeps what was
-    recorded; a name that is absent there was filled from the job's conditions.
+    ``temperature`` [K], ``static`` [Pa, gauge], ``yaw`` (counted from the axis, offsets of the probe taken off) and ``pitch`` [rad]
+    are complete. ``columns`` keeps what was recorded; a name that is absent there was filled from the job's conditions.
+    ``pitch_pressure`` [Pa], of a three-dimensional probe, is NaN where nothing was read.
     """
 
     differential_pressure: Array
@@ -135,6 +118,7 @@ class Readings:
     meter_density: Stated | None = None
     standard_error: Array | None = None
     mean_root: Array | None = None
+    pitch_pressure: Array | None = None
 
     def __post_init__(self) -> None:
         for name in ("differential_pressure", "temperature", "static", "yaw", "pitch"):
@@ -234,6 +218,7 @@ class Corrections:
     wall_factor_source: str = ""
     turbulence: Stated | None = None
     blockage: bool = False
+    displacement: Literal["", "macmillan", "mckeon"] = ""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -243,15 +228,6 @@ class Policies:
     negative: Literal["method", "zero", "signed", "omit"] = "method"
     missing: Literal["error", "neighbour", "field", "omit"] = "error"
     below: Literal["half", "zero", "limit"] = "half"
-
-
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class Source:
-    """A file the job was read from: shown name, SHA-256, and its text verbatim where it is text."""
-
-    name: str
-    sha256: str
-    text: str = ""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)

@@ -62,18 +62,19 @@ def mole_fraction(
     v = np.asarray(value, dtype=np.float64)
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         at = saturated or _pure
-        x = _FORMS[form](v, t, p, at)
-        limit = np.minimum(at(t, p) / p, 1.0)
+        here = at(t, p)
+        x = _FORMS[form](v, t, p, here, at)
+        limit = np.minimum(here / p, 1.0)
         possible = (x >= 0.0) & (x <= limit * (1.0 + 1e-9)) & (x < 1.0)
     return np.asarray(np.where(possible, x, np.nan))
 
 
-def _relative(v: Array, t: Array, p: Array, at: Saturation) -> Array:
-    x = np.where(v == 0.0, 0.0, v * at(t, p) / p)
+def _relative(v: Array, _: Array, p: Array, here: Array, __: Saturation) -> Array:
+    x = np.where(v == 0.0, 0.0, v * here / p)
     return np.where((v >= 0.0) & (v <= 1.0), x, np.nan)
 
 
-def _dew_point(v: Array, t: Array, p: Array, at: Saturation) -> Array:
+def _dew_point(v: Array, t: Array, p: Array, _: Array, at: Saturation) -> Array:
     return np.where(v <= t, at(v, p) / p, np.nan)
 
 
@@ -91,17 +92,18 @@ def humidity_ratio_from_wet_bulb(wet_bulb: Array, temperature: Array, pressure: 
     return np.asarray(np.where(tw <= td, w, np.nan))
 
 
-def _wet_bulb(v: Array, t: Array, p: Array, at: Saturation) -> Array:
+def _wet_bulb(v: Array, t: Array, p: Array, _: Array, at: Saturation) -> Array:
     w = humidity_ratio_from_wet_bulb(v, t, p, at)
     return w / (w + RATIO)
 
 
-_FORMS: dict[str, Callable[[Array, Array, Array, Saturation], Array]] = {
+# Each takes the value, temperature, pressure, the partial pressure at saturation there, and saturation as a function.
+_FORMS: dict[str, Callable[[Array, Array, Array, Array, Saturation], Array]] = {
     "relative_humidity": _relative,
     "wet_bulb": _wet_bulb,
     "dew_point": _dew_point,
-    "humidity_ratio": lambda v, t, p, _: v / (v + RATIO) + 0.0 * (t + p),
-    "moisture": lambda v, t, p, _: v + 0.0 * (t + p),
-    "saturated": lambda v, t, p, at: at(t, p) / p + 0.0 * v,
-    "dry": lambda v, t, p, _: 0.0 * (v + t + p),
+    "humidity_ratio": lambda v, t, p, _, __: v / (v + RATIO) + 0.0 * (t + p),
+    "moisture": lambda v, t, p, _, __: v + 0.0 * (t + p),
+    "saturated": lambda v, _, p, here, __: here / p + 0.0 * v,
+    "dry": lambda v, t, p, _, __: 0.0 * (v + t + p),
 }

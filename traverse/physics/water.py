@@ -37,3 +37,13 @@ def saturation_pressure(temperature: npt.ArrayLike) -> Array:
     safe = np.where(inside, t, 300.0)
     value = np.where(safe < TRIPLE_POINT, _branch(safe, ICE), _branch(safe, WATER))
     return np.asarray(np.where(inside, value, np.where((t > 473.15) & (t < 2000.0), np.inf, np.nan)))
+
+
+def saturation_branch(temperature: Array, branch: tuple[float, ...]) -> tuple[Array, Array]:
+    """Return the saturation pressure [Pa] by one branch, ``ICE`` or ``WATER``, and the slope of its logarithm [1/K].
+
+    Temperature in K, shape (...); meaningless outside the range of the branch.
+    """
+    c, t = branch, temperature
+    slope = c[2] + t * (2.0 * c[3] + t * (3.0 * c[4] + t * (4.0 * c[5]))) + (c[6] - c[0] / t) / t
+    return _branch(t, c), np.asarray(slope)

@@ -44,7 +44,9 @@ def _epa(setup: Setup) -> bool:
 
 def _take(setup: Setup) -> tuple[Item, ...]:
     table = tables.load("planning")
-    s_type = setup.pitot is not None and setup.pitot.type == "s-type"
+    kind = setup.pitot.type if setup.pitot is not None else "pitot-static"
+    turned = " with its angle-measuring device" if kind.endswith("dimensional") else ""
+    probe = {"s-type": "S-type probe", "pitot-static": "pitot-static tube"}.get(kind, f"{kind} probe{turned}")
     thermometer = Item(text="thermometer or thermocouple that reaches the middle of the duct")
     barometer = Item(text="barometer, or the station pressure and the difference in height from its station")
     if _epa(setup):
@@ -58,7 +60,7 @@ def _take(setup: Setup) -> tuple[Item, ...]:
         "given": "the statement of density or molar mass for this gas", "mixture": "the analysis of this gas, with its moisture",
     }
     return (
-        Item(text=f"{'S-type probe' if s_type else 'pitot-static tube'} of the length above, straight, with its coefficient and date"),
+        Item(text=f"{probe} of the length above, straight, with its coefficient and date"),
         Item(text="gauge of the range and division above, with its number and date of calibration"),
         Item(text="two hoses of equal length without kinks, marked + and -, with spare ends and clamps"),
         thermometer, barometer,

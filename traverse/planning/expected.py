@@ -128,7 +128,7 @@ def expected(setup: Setup) -> Expected:
     relative = relative_velocity(section.shape, section.size, exponent, layout.x, layout.y)
     density, unknown = density_of(setup)
     mean = setup.design.actual_flow.value / section.area if setup.design else None
-    coefficient = setup.pitot.coefficient if setup.pitot else None
+    coefficient = None if setup.pitot is None else setup.pitot.coefficient if mean is None else setup.pitot.at(mean)
     lacking = ["no design flow: state [design] actual_flow or velocity"] if mean is None else []
     lacking += [unknown] if unknown else []
     lacking += ["no coefficient of the probe: state [pitot] coefficient"] if coefficient is None else []

@@ -11,19 +11,20 @@ from traverse import layouts
 from traverse.chain import Setting
 from traverse.errors import DomainError, ReadingError
 from traverse.methods import Method
-from traverse.model import COMPONENTS, UNREAD, Array, Corrections, Job, Layout, Policies, Readings, Reference, Run, Section, frozen
+from traverse.model import COMPONENTS, UNREAD, Array, Job, Layout, Policies, Readings, Reference, Run, Section, frozen
+from traverse.treatment._air import air_equation, air_findings, compressibility_factor
+from traverse.treatment._corrections import STEM_BLOCKAGE, correction_findings, displaced, point_factor, stem_factor
 from traverse.treatment._matter import derived_gas, matter_findings, molar_mass, shown_water, stack_inputs, stack_setting, why_no_water
+from traverse.treatment._probe import probe_findings, probe_inputs, probe_setting, refuse_outside
 from traverse.treatment._unread import FROM_FIELD, fill
 from traverse.treatment._unread import RULES as MISSING_RULES
 
 Flags = npt.NDArray[np.bool_]
 __all__ = [
-    "FROM_FIELD", "MISSING_RULES", "Flags", "Treated", "derived_gas", "inputs", "matter_findings", "molar_mass", "point_factor",
-    "refuse_impossible", "setting", "treat",
+    "FROM_FIELD", "MISSING_RULES", "STEM_BLOCKAGE", "Flags", "Treated", "air_findings", "compressibility_factor",
+    "correction_findings", "derived_gas", "displaced", "inputs", "matter_findings", "molar_mass", "point_factor",
+    "probe_findings", "refuse_impossible", "refuse_outside", "setting", "stem_factor", "treat",
 ]
-# Blockage of the section by a cylindrical stem: relative velocity correction per share of the area that the stem
-# fills. ISO 3966 clause 12 (corrections), value from memory.
-STEM_BLOCKAGE = 0.7
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -114,12 +115,14 @@ def setting(job: Job, run: Run, method: Method, *, signed: bool = False) -> Sett
     density = ""
     if gas.density is not None:
         density = "at conditions" if gas.density_temperature is not None else "at plane"
+    own = method.constants.get(job.units)
     return Setting(
         shape=job.plane.section.shape, gas_kind=gas.kind, humidity=gas.humidity,
         density_given=density,  # type: ignore[arg-type]
         ratio_of_specific_heats=gas.ratio_of_specific_heats, arithmetic=method.arithmetic,
-        compressible=method.compressible, signed=signed, constants=method.constants.get(job.units),
+        compressible=method.compressible, signed=signed, constants=own,
         reference=_reference(job.reference), dimensions=tuple(job.plane.section.dimensions), stack=stack_setting(gas),
+        probe=probe_setting(run), equation="ideal" if own is not None else air_equation(run),
     )
 
 
@@ -154,24 +157,17 @@ def inputs(job: Job, run: Run, method: Method, treated: Treated) -> dict[str, Ar
         "density_temperature": one(gas.density_temperature.value if gas.density_temperature else None),
         "density_pressure": one(gas.density_pressure.value if gas.density_pressure else None),
         "molar_mass": one(gas.molar_mass.value if gas.molar_mass else None),
-        "point_factor": point_factor(job.corrections, run, job.layout, job.plane.section.area),
+        "point_factor": point_factor(
+            job.corrections, run, job.layout, job.plane.section, treated.differential_pressure, treated.counted
+        ),
         "wall_factor": one(job.corrections.wall_factor if job.corrections.wall_factor is not None else 1.0),
         "profile_factor": one(treated.profile_factor),
     }
     values |= {name: one(gas.fraction(name)) for name in COMPONENTS}
     values |= stack_inputs(gas)
+    values |= probe_inputs(run, treated.counted, treated.rule)
     values |= {name: one(stated.value) for name, stated in job.plane.section.dimensions.items()}
     return values
-
-
-def point_factor(corrections: Corrections, run: Run, layout: Layout, area: float) -> Array:
-    """Return the factor on each point's velocity from the corrections that were asked for, shape (points,)."""
-    factor = np.ones(layout.size)
-    if corrections.turbulence is not None:
-        factor /= np.sqrt(1.0 + corrections.turbulence.value**2)
-    if corrections.blockage and run.pitot.stem is not None:
-        factor *= 1.0 - STEM_BLOCKAGE * run.pitot.stem.value * layout.depth / area
-    return frozen(factor)
 
 
 def refuse_impossible(quantities: dict[str, Array], run: Run) -> None:

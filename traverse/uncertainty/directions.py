@@ -20,13 +20,14 @@ from traverse.treatment import Flags
 _TARGET = {
     "moisture": "moisture_shift", "relative_humidity": "water", "wet_bulb": "water", "dew_point": "water",
     "humidity_ratio": "water", "meter_pressure": "meter_barometric",
-    "position": "root_shift", "layout": "profile_factor", "turbulence": "point_factor",
+    "position": "root_shift", "layout": "profile_factor", "alignment": "differential_pressure", "static_holes": "differential_pressure",
 }
 _UNIT = {
     "coefficient": "1", "differential_pressure": "Pa", "temperature": "K", "static": "Pa", "barometric": "Pa",
     "moisture": "1", "relative_humidity": "1", "wet_bulb": "K", "dew_point": "K", "humidity_ratio": "kg/kg",
     "oxygen": "1", "carbon_dioxide": "1", "carbon_monoxide": "1", "sulfur_dioxide": "1", "density": "kg/m3",
     "molar_mass": "g/mol", "position": "m", "yaw": "rad", "layout": "1",
+    "pitch": "rad", "pitch_pressure": "Pa", "alignment": "Pa", "static_holes": "Pa",
     "condensed": "kg", "silica_gel": "kg", "meter_volume": "m3", "meter_temperature": "K", "meter_pressure": "Pa", "orifice_pressure": "Pa",
     "meter_factor": "1", "excess_air": "1", "air_humidity_ratio": "kg/kg", **dict.fromkeys(SPECIES, "1"),
 }
@@ -68,7 +69,11 @@ def rows(job: Job, run: Run, inputs: Mapping[str, Array], counted: Flags) -> tup
 
 def _row(component: Component, name: str, job: Job, run: Run, inputs: Mapping[str, Array], counted: Flags) -> Row:
     target = _TARGET.get(name, name)
-    base = np.asarray(inputs[target], dtype=np.float64)
+    shown_by = target
+    if name == "coefficient" and "coefficient_shift" in inputs:
+        # Each point has a coefficient of its own: the calibration moves as a whole.
+        target = "coefficient_shift"
+    base = np.asarray(inputs[shown_by], dtype=np.float64)
     if name == "moisture" and component.relative:
         base = np.asarray(inputs["water"], dtype=np.float64)
     size = component.standard * np.abs(base) if component.relative else np.full(base.shape, component.standard)
@@ -83,7 +88,7 @@ def _row(component: Component, name: str, job: Job, run: Run, inputs: Mapping[st
         unit = "m3" if run.gas.train.by_volume else "kg"
     return Row(
         input=name, kind=component.kind, shared=component.shared, standard_uncertainty=shown, unit=unit,
-        degrees_of_freedom=component.degrees_of_freedom, stated=component.text, second_order=name == "yaw",
+        degrees_of_freedom=component.degrees_of_freedom, stated=component.text, second_order=name in {"yaw", "pitch"},
         directions=tuple(_directions(target, size, component.shared, counted)),
     )
 

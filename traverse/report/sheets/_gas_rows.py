@@ -4,8 +4,8 @@ from __future__ import annotations
 
 import numpy as np
 
-from traverse.physics import gas, moist_air, water
-from traverse.report.sheets import _stack_rows
+from traverse.physics import gas, humid_air, moist_air, water
+from traverse.report.sheets import _air_rows, _stack_rows
 from traverse.report.sheets._ledger import Ledger
 from traverse.report.sheets._run_view import RunView
 from traverse.report.sheets._view import View
@@ -16,7 +16,9 @@ _SATURATION = "{s0}/T+{s1}+{s2}*T+{s3}*T^2+{s4}*T^3+{s5}*T^4+{s6}*LN(T)"
 def species_rows(ledger: Ledger, view: View, run: RunView) -> None:
     """Put the constants that the gas needs, each with its source."""
     ledger.title("Constants")
-    ledger.number("R", "Gas constant", gas.R, "J/(mol K)", "CODATA, exact")
+    constant, source = _air_rows.gas_constant(run)
+    ledger.number("R", "Gas constant", constant, "J/(mol K)", source)
+    _air_rows.constants(ledger, run)
     own = run.setting.constants
     if own is not None:
         for name, label, value, unit in (
@@ -67,6 +69,17 @@ def _saturation(ledger: Ledger, name: str, label: str, at: str, temperature: flo
     return value
 
 
+def _in_air(ledger: Ledger, run: RunView, where: str, at: str, temperature: float) -> tuple[str, float]:
+    """Put the saturation pressure and what air makes of it; return formula and value of the vapour's partial pressure."""
+    label = f"Saturation pressure {where}"
+    if not _air_rows.own_saturation(ledger, run, label, at, temperature):
+        pure = _saturation(ledger, "pws", label, at, temperature)
+        if run.setting.equation == "ideal":
+            return "{pws}", pure
+    value = humid_air.saturation(run.setting.equation, np.array(temperature), np.array(run.mean["pressure"]))
+    return _air_rows.enhanced(ledger, run, at, temperature), float(value)
+
+
 def _moisture(ledger: Ledger, run: RunView) -> None:
     """Put the mole fraction of water from whichever humidity was stated."""
     form, moisture = run.setting.humidity, run.matter["moisture"]
@@ -74,11 +87,11 @@ def _moisture(ledger: Ledger, run: RunView) -> None:
         return
     formula = {"dry": "0", "moisture": "{water}", "humidity_ratio": "{water}/({water}+{eps})"}.get(form, "")
     if form in {"relative_humidity", "saturated"}:
-        _saturation(ledger, "pws", "Saturation pressure at the mean temperature", "Tm", run.mean["temperature"])
-        formula = "{water}*{pws}/{pm}" if form == "relative_humidity" else "{pws}/{pm}"
+        vapour, _ = _in_air(ledger, run, "at the mean temperature", "Tm", run.mean["temperature"])
+        formula = f"{{water}}*{vapour}/{{pm}}" if form == "relative_humidity" else f"{vapour}/{{pm}}"
     elif form == "dew_point":
-        _saturation(ledger, "pws", "Saturation pressure at the dew point", "water", run.input("water"))
-        formula = "{pws}/{pm}"
+        vapour, _ = _in_air(ledger, run, "at the dew point", "water", run.input("water"))
+        formula = f"{vapour}/{{pm}}"
     elif form == "moisture_train":
         formula = _stack_rows.train_rows(ledger, run)
         if run.mean["temperature"] <= 473.15:
@@ -98,18 +111,17 @@ def _moisture(ledger: Ledger, run: RunView) -> None:
 def _wet_bulb(ledger: Ledger, run: RunView) -> None:
     """Put the humidity ratio by the energy balance of the wet bulb."""
     wet = run.input("water")
-    pws = _saturation(ledger, "pws", "Saturation pressure at the wet bulb", "water", wet)
+    vapour, pws = _in_air(ledger, run, "at the wet bulb", "water", wet)
     ws = moist_air.RATIO * pws / (run.mean["pressure"] - pws)
-    ledger.live("Ws", "Humidity ratio at saturation", "{eps}*{pws}/({pm}-{pws})", ws, "kg/kg", fmt="0.000000")
+    ledger.live("Ws", "Humidity ratio at saturation", f"{{eps}}*{vapour}/({{pm}}-{vapour})", ws, "kg/kg", fmt="0.000000")
     branch = moist_air.WET_BULB["ice" if wet < 273.15 else "water"]
     for name, value in branch.items():
         ledger.number(f"wb.{name}", f"  {name}", value, "kJ/kg", "ASHRAE Fundamentals 2017 ch. 1, eqs. 33 and 35")
     td, tw = "({Tm}-273.15)", "({water}-273.15)"
     top = f"(({{wb.latent}}-{{wb.slope}}*{tw})*{{Ws}}-{{wb.heat}}*({td}-{tw}))"
     bottom = f"({{wb.latent}}+{{wb.vapour}}*{td}-{{wb.liquid}}*{tw})"
-    ratio = float(moist_air.humidity_ratio_from_wet_bulb(
-        np.array(wet), np.array(run.mean["temperature"]), np.array(run.mean["pressure"])
-    ))
+    moist = run.matter["moisture"]
+    ratio = moist_air.RATIO * moist / (1.0 - moist)
     ledger.live("W", "Humidity ratio", f"{top}/{bottom}", ratio, "kg/kg", fmt="0.000000")
 
 

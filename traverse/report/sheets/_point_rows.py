@@ -14,7 +14,8 @@ from traverse.report.spec import Live, SheetSpec, Text
 from traverse.treatment import FROM_FIELD
 from traverse.units import UNITS
 
-SI_UNIT = {"differential_pressure": "Pa", "velocity": "m/s", "temperature": "K", "static": "Pa", "yaw": "rad"}
+SI_UNIT = {"differential_pressure": "Pa", "velocity": "m/s", "temperature": "K", "static": "Pa", "yaw": "rad",
+           "pitch": "rad", "pitch_pressure": "Pa"}
 HEADS = (
     "point", "status", "weight of the layout", "counts", "weight used", "dp [Pa]", "dp used [Pa]",
     "root of dp [Pa^0.5]", "temperature [K]", "static [Pa]", "absolute [Pa]", "density [kg/m3]", "impact/static",
@@ -162,7 +163,7 @@ class _Point:
         elif run.setting.density_given == "at plane":
             formula = "{density}"
         else:
-            formula = "[p]*{M}/(1000*{R}*[T])"
+            formula = "[p]*{M}/(1000*{R}*[T]" + (")" if run.setting.equation == "ideal" else "*[Z])")
         self.live(row, 12, "rho", formula, density, "0.00000")
 
     def _velocity(self, row: int) -> None:
@@ -174,41 +175,58 @@ class _Point:
             for column, name in ((18, "wv"), (19, "wvr"), (20, "wvs")):
                 self.number(row, column, name, 0.0, "0.00000")
             return
-        root, coefficient, pressure = float(run.root[i]), run.input("coefficient"), float(run.pressure[i])
+        calibrated = run.setting.probe is not None
+        own, coefficient = "[C]" if calibrated else "{coefficient}", run.input("coefficient")
+        if calibrated:
+            coefficient = float(run.result.probe["coefficient"][i])
+        root, pressure = float(run.root[i]), float(run.pressure[i])
         if run.setting.compressible:
             x = (coefficient * root) ** 2 / pressure
             gamma = run.ratio
-            self.live(row, 13, "x", "({coefficient}*[root])^2/[p]", x, "0.00000")
+            self.live(row, 13, "x", f"({own}*[root])^2/[p]", x, "0.00000")
             self.live(row, 14, "ln", "IF([x]=0,0,LN(1+[x])*[x]/((1+[x])-1))", math.log1p(x), "0.00000")
             k = float(pitot.compressibility_factor((coefficient * root) ** 2, pressure, gamma))
             y = "({a}*[ln])"
             self.live(row, 15, "k", f"IF([x]=0,1,SQRT(2*EXP({y}/2)*SINH({y}/2)/({{a}}*[x])))", k, "0.000000")
-        factor = float(np.cos(run.inputs["yaw"][i]) * run.inputs["point_factor"][i])
-        yaw = self._recorded("yaw", float(run.inputs["yaw"][i]))
-        if yaw and run.inputs["yaw"][i] != 0 and run.inputs["point_factor"][i] == 1.0:
-            self.live(row, 16, "f", f"COS({yaw})", factor, "0.00000")
-        else:
-            self.number(row, 16, "f", factor, "0.00000")
+        self._factor(row)
         velocity = float(np.broadcast_to(run.result.velocity, (self.view.layout.size,))[i])
         if run.setting.constants is not None:
-            self.live(row, 17, "v", self._own_velocity(), velocity, "0.000")
+            self.live(row, 17, "v", self._own_velocity(own), velocity, "0.000")
         else:
             k_text = "*[k]" if run.setting.compressible else ""
-            self.live(row, 17, "v", f"{{coefficient}}*[root]*SQRT(2/[rho]){k_text}*[f]", velocity, "0.000")
+            self.live(row, 17, "v", f"{own}*[root]*SQRT(2/[rho]){k_text}*[f]", velocity, "0.000")
         weight = float(run.inputs["weight"][i])
         density = float(np.broadcast_to(run.result.density, (self.view.layout.size,))[i])
         self.live(row, 18, "wv", "[w]*[v]", weight * velocity, "0.00000")
         self.live(row, 19, "wvr", "[wv]*[rho]", weight * velocity * density, "0.00000")
         self._standard(row, weight * velocity, density)
 
-    def _own_velocity(self) -> str:
+    def _factor(self, row: int) -> None:
+        """What makes the axial component of the velocity along the probe, and the corrections that the job asked for."""
+        run, i = self.run, self.i
+        yaw, correction = float(run.inputs["yaw"][i]), float(run.inputs["point_factor"][i])
+        pitch = float(run.result.probe["pitch"][i]) if run.setting.probe else 0.0
+        offsets = run.result.run.pitot.yaw_offset
+        recorded = self._recorded("yaw", yaw + sum(stated.value for stated in offsets))
+        turned = recorded + "".join(f"-{{yaw_offset.{number}}}" for number in range(len(offsets)))
+        live = bool(recorded) and self.view.method.uses_yaw
+        parts = [f"COS({turned})"] if live else []
+        parts += ["COS([pitch])"] if pitch != 0 else []
+        parts += ["[corr]"] if correction != 1.0 else []
+        factor = float(np.cos(yaw) * np.cos(pitch) * correction)
+        if parts and (live or yaw == 0):
+            self.live(row, 16, "f", "*".join(parts), factor, "0.00000")
+        else:
+            self.number(row, 16, "f", factor, "0.00000")
+
+    def _own_velocity(self, coefficient: str) -> str:
         """Return the formula of a velocity in the method's own arithmetic: with the mean temperature, or with the point's."""
         own = self.run.setting.constants
         assert own is not None, "asked only for such a method"
         if self.run.setting.arithmetic == "root-mean":
-            return "{speed_per_root}*[root]*[f]"
+            return "{speed_per_root}*[root]*[f]" + ("*[C]" if self.run.setting.probe else "")
         scale = "[T]*1.8-459.67" if own.temperature == "degF" else "[T]-273.15"
-        return f"{{Kp}}*{{coefficient}}*SQRT(({scale}+{{offset}})/({{Ps}}*{{M}}))/SQRT({{f.head}})*{{f.speed}}*[root]*[f]"
+        return f"{{Kp}}*{coefficient}*SQRT(({scale}+{{offset}})/({{Ps}}*{{M}}))/SQRT({{f.head}})*{{f.speed}}*[root]*[f]"
 
     def _standard(self, row: int, weighted: float, density: float) -> None:
         """The point's part of the standard flow, where it is summed over the points."""
@@ -219,6 +237,9 @@ class _Point:
         if kind == "density":
             self.live(row, 20, "wvs", "[wv]*[rho]/{reference_density}", weighted * density / first, "0.00000")
             return
-        ratio = float(run.pressure[self.i]) / second * (first / float(run.inputs["temperature"][self.i]))
-        self.live(row, 20, "wvs", "[wv]*([p]/{reference_pressure})*({reference_temperature}/[T])", weighted * ratio, "0.00000")
+        ratio, real = float(run.pressure[self.i]) / second * (first / float(run.inputs["temperature"][self.i])), ""
+        if run.compressibility is not None:
+            ratio, real = ratio / float(run.compressibility[self.i]), "/[Z]"
+        formula = f"[wv]*([p]/{{reference_pressure}})*({{reference_temperature}}/[T]){real}"
+        self.live(row, 20, "wvs", formula, weighted * ratio, "0.00000")
 

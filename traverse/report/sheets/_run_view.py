@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from traverse.chain import Setting, composition, ratio_of_specific_heats, resolved, roots
+from traverse.chain import Setting, composition, compressibility, ratio_of_specific_heats, resolved, roots
 from traverse.model import COMPONENTS, Array
 from traverse.physics import mixture
 from traverse.physics.gas import wet_composition
@@ -17,7 +17,7 @@ from traverse.treatment import inputs, setting
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class RunView:
-    """Arrays have shape (points,); ``mean`` and ``matter`` are numbers."""
+    """Arrays have shape (points,); ``mean`` and ``matter`` are numbers. ``compressibility`` is None for an ideal gas."""
 
     index: int
     result: RunResult
@@ -28,6 +28,7 @@ class RunView:
     mean: dict[str, float]
     matter: dict[str, float]
     ratio: float
+    compressibility: Array | None
 
     @classmethod
     def of(cls, view: View, index: int) -> RunView:
@@ -42,11 +43,13 @@ class RunView:
             "static": float(np.sum(weight * arrays["static"])), "pressure": float(np.sum(weight * pressure)),
         }
         matter = composition(arrays, equations, np.array([mean["temperature"]]), np.array([mean["pressure"]]))
+        factor = compressibility(arrays, equations, matter)
         return cls(
             index=index, result=result, inputs=arrays, setting=equations, pressure=pressure,
             root=roots(arrays["differential_pressure"], signed=equations.signed), mean=mean,
             matter={name: float(np.ravel(value)[0]) for name, value in matter.items()},
             ratio=float(np.ravel(ratio_of_specific_heats(arrays, equations, matter, np.array([mean["temperature"]])))[0]),
+            compressibility=None if factor is None else np.broadcast_to(factor, (view.layout.size,)),
         )
 
     def composition(self) -> dict[str, Array]:

@@ -68,11 +68,13 @@ def _root_mean(ledger: Ledger, run: RunView) -> None:
                 "barometric + static/13.6")
     own_root = run.result.value("mean_root_differential_pressure") / math.sqrt(head.factor)
     ledger.live("mro", "Mean root in the method's unit", "{mr}/SQRT({f.head})", own_root, f"{own.head}^0.5")
+    # A calibrated probe has a coefficient of its own at every point: it stands in the rows of the points.
+    single, times = (1.0, "") if run.setting.probe else (run.input("coefficient"), "*{coefficient}")
     per_root = (
-        own.velocity_constant * run.input("coefficient")
+        own.velocity_constant * single
         * math.sqrt((shown + own.temperature_offset) / (absolute * run.matter["molar_mass"])) / math.sqrt(head.factor) * speed.factor
     )
-    ledger.live("speed_per_root", "Velocity per root", "{Kp}*{coefficient}*SQRT({Ts}/({Ps}*{M}))/SQRT({f.head})*{f.speed}", per_root,
+    ledger.live("speed_per_root", "Velocity per root", f"{{Kp}}{times}*SQRT({{Ts}}/({{Ps}}*{{M}}))/SQRT({{f.head}})*{{f.speed}}", per_root,
                 "m/s per Pa^0.5", "Method 2, equation 2-7")
 
 

@@ -53,7 +53,7 @@ def _facts(sheet: SheetSpec, view: View, row: int) -> int:
         ("Section", plane.section.words),
         ("Straight lengths", lengths or "not stated"),
         ("Points", f"{view.layout.size} on {len(view.layout.lines)} lines, {view.layout.title.lower()}; {len(view.runs)} run(s)"),
-        ("Probe", f"{pitot.type}, coefficient {pitot.coefficient:g} ({pitot.coefficient_source})"),
+        ("Probe", f"{pitot.type}, {pitot.words}"),
         ("Standard conditions", job.reference.source if job.reference else "none stated; no standard flows"),
     ]
     for label, text in facts:

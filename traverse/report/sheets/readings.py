@@ -9,7 +9,7 @@ from traverse.report.spec import SheetSpec, Text
 
 ORDER, TITLE = 10, "Readings"
 RECORDED = (
-    "differential_pressure", "velocity", "total_pressure", "temperature", "static", "yaw", "pitch", "depth",
+    "differential_pressure", "velocity", "total_pressure", "temperature", "static", "yaw", "pitch", "pitch_pressure", "depth",
 )
 
 

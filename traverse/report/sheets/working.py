@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from traverse.report.sheets._air_rows import compressibility_table
 from traverse.report.sheets._gas_rows import gas_rows, species_rows
 from traverse.report.sheets._ledger import Ledger
 from traverse.report.sheets._point_rows import point_table
+from traverse.report.sheets._probe_rows import correction_table, probe_rows, probe_table
 from traverse.report.sheets._run_view import RunView
 from traverse.report.sheets._stack_rows import stack_stated
 from traverse.report.sheets._total_rows import total_rows
@@ -32,6 +34,9 @@ def _working(view: View, index: int) -> SheetSpec:
     species_rows(ledger, view, run)
     ledger.row += 1
     point_table(ledger, view, run)
+    compressibility_table(ledger, view, run)
+    probe_table(ledger, view, run)
+    correction_table(ledger, view, run)
     gas_rows(ledger, view, run)
     total_rows(ledger, view, run)
     for column, width in enumerate((34, 15, 13, *(10.5,) * 17), start=1):
@@ -49,8 +54,7 @@ def _stated(ledger: Ledger, view: View, run: RunView) -> None:
         ledger.stated("static", "Static pressure (gauge)", conditions.static, "Pa")
     if conditions.temperature is not None:
         ledger.stated("temperature", "Temperature", conditions.temperature, "K")
-    ledger.number("coefficient", "Pitot coefficient", run.result.run.pitot.coefficient, "1",
-                  run.result.run.pitot.coefficient_source)
+    probe_rows(ledger, run)
     if gas.water is not None:
         unit = {"wet_bulb": "K", "dew_point": "K", "humidity_ratio": "kg/kg"}.get(gas.humidity, "1")
         ledger.stated("water", gas.humidity.replace("_", " ").capitalize(), gas.water, unit)
